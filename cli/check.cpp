@@ -1,0 +1,36 @@
+// pellicle check: reads a run, says what would be computed and what is missing.
+
+#include <memory>
+
+#include "command.hpp"
+#include "pellicle/pellicle.hpp"
+
+namespace pellicle::cli {
+namespace {
+
+struct Options {
+  std::string run_file;
+  Output output;
+};
+
+int check(const Options& o) {
+  const pellicle::Run run = read_run_file(o.run_file);
+  const ThicknessResults results = run_thickness(run);
+  deliver(o.output, o.output.json ? check_json(run, results) : check_text(run, results));
+  const bool any = std::any_of(results.results.begin(), results.results.end(), [](const auto& r) { return r.thickness.has_value(); });
+  const bool all = std::all_of(results.results.begin(), results.results.end(), [](const auto& r) { return r.thickness.has_value(); });
+  return !any || (o.output.strict && !all) ? kNoAnswer : kDone;
+}
+
+}  // namespace
+
+Run add_check(CLI::App& app) {
+  auto o = std::make_shared<Options>();
+  CLI::App* c = app.add_subcommand("check", "Reads a run file and its table; says what can be computed and what is doubtful.");
+  c->footer("  pellicle check coupon.toml\n  pellicle check coupon.toml --strict && pellicle thickness coupon.toml\n");
+  c->add_option("run", o->run_file, "run file (TOML); - reads standard input")->type_name("RUN.toml")->required();
+  add_output_options(*c, o->output, false, true);
+  return [o] { return check(*o); };
+}
+
+}  // namespace pellicle::cli

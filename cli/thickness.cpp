@@ -1,0 +1,171 @@
+// pellicle thickness: film thickness from a run file, or from a few numbers on the command line.
+
+#include <memory>
+
+#include "command.hpp"
+#include "material_options.hpp"
+#include "pellicle/pellicle.hpp"
+
+namespace pellicle::cli {
+namespace {
+
+struct Options {
+  std::string run_file;
+  std::string film, substrate, line, source, length_set, area_unit = "arbitrary";
+  std::optional<double> photon_energy_ev, takeoff_deg;
+  MaterialOverrides film_overrides;
+  QuantityOption emission, film_area, substrate_area, reference_ratio, reference_film_area, reference_substrate_area, length;
+  Output output;
+};
+
+/// The error of a part, with the option it belongs to in front.
+template <typename Function>
+auto for_option(const std::string& option, Function&& function) {
+  try {
+    return function();
+  } catch (const InputError& e) {
+    throw InputError(e.where().empty() ? option : option + ": " + e.where(), e.fact(), e.hint());
+  }
+}
+
+std::string required(const std::string& value, const std::string& option) {
+  if (value.empty()) throw InputError(option, "it is missing", "give a run file, or --film, --substrate, --line, --source and the areas");
+  return value;
+}
+
+Quantity required(const QuantityOption& option, const std::string& name) {
+  const std::optional<Quantity> q = option.quantity(name);
+  if (!q) throw InputError("--" + name, "it is missing", "give a run file, or both areas and a reference");
+  return *q;
+}
+
+pellicle::Run run_from_options(const Options& o) {
+  pellicle::Run run;
+  run.place = "command line";
+  if (o.source.empty() == !o.photon_energy_ev.has_value()) {
+    throw InputError("--source", o.source.empty() ? "it is missing" : "both --source and --photon-energy-ev are given", "give one of them");
+  }
+  run.source = for_option("--source", [&] { return o.photon_energy_ev ? photon_source_of_energy(*o.photon_energy_ev) : photon_source(o.source); });
+  run.sample.layers.push_back({"film", for_option("--film", [&] { return define_material(required(o.film, "--film"), o.film_overrides); })});
+  run.sample.substrate = for_option("--substrate", [&] { return define_material(required(o.substrate, "--substrate")); });
+  run.length_set = o.length_set;
+  run.area_unit = for_option("--area-unit", [&] { return area_unit(o.area_unit); });
+
+  const std::optional<Quantity> emission = o.emission.quantity("emission-deg");
+  if (emission && o.takeoff_deg) throw InputError("--takeoff-deg", "both --emission-deg and --takeoff-deg are given", "keep one; emission = 90 - take-off");
+  if (!emission && !o.takeoff_deg) throw InputError("--emission-deg", "it is missing", "give --emission-deg, counted from the surface normal, or --takeoff-deg, from the surface");
+  if (emission) {
+    check_emission_deg(emission->value);
+    run.emission_deg = emission->value;
+    run.emission_sd_deg = emission->standard_uncertainty;
+  } else {
+    run.emission_deg = emission_deg_from_takeoff(*o.takeoff_deg);
+    run.emission_sd_deg = o.emission.sd;
+  }
+
+  Line film;
+  film.label = "film";
+  film.level = for_option("--line", [&] { return core_level(required(o.line, "--line")); });
+  film.kinetic_energy_ev = kinetic_energy_ev(*film.level, run.source);
+  film.from = "film";
+  Line substrate = film;
+  substrate.label = substrate.from = kSubstrate;
+  if (const auto length = o.length.quantity("length-nm")) {
+    if (!run.length_set.empty()) throw InputError("--length-set", "both --length-nm and --length-set are given", "keep one");
+    if (!(length->value > 0.0)) throw InputError("--length-nm", number_text(length->value) + " is not a length", "expected a number > 0");
+    substrate.length_nm["film"] = *length;
+  }
+  film.reference_area = o.reference_film_area.quantity("reference-film-area");
+  substrate.reference_area = o.reference_substrate_area.quantity("reference-substrate-area");
+  const std::optional<Quantity> ratio = o.reference_ratio.quantity("reference-ratio");
+  if (ratio && (film.reference_area || substrate.reference_area)) {
+    throw InputError("--reference-ratio", "both a reference ratio and reference areas are given", "keep one kind");
+  }
+  if (!ratio && !(film.reference_area && substrate.reference_area)) {
+    throw InputError("--reference-ratio", "no reference ratio is given",
+                     "give --reference-ratio, or both --reference-film-area and --reference-substrate-area");
+  }
+  run.lines = {film, substrate};
+  if (ratio) run.references.push_back({"film", std::string(kSubstrate), *ratio});
+
+  for (const auto& [option, name, label] : {std::tuple{&o.film_area, "film-area", "film"}, {&o.substrate_area, "substrate-area", "substrate"}}) {
+    const Quantity area = required(*option, name);
+    if (!(area.value >= 0.0)) throw InputError("--" + std::string(name), number_text(area.value) + " is not an area", "expected a number >= 0");
+    AreaRow row;
+    row.spot = "1";
+    row.line = label;
+    row.area = area.value;
+    row.area_sd = area.standard_uncertainty;
+    row.place = "--" + std::string(name);
+    run.areas.push_back(row);
+  }
+  return run;
+}
+
+int exit_code(const Options& o, const ThicknessResults& results) {
+  std::size_t failed = 0;
+  bool error_finding = false;
+  for (const ThicknessResult& r : results.results) {
+    if (!r.thickness) {
+      ++failed;
+      continue;
+    }
+    for (const Finding& f : r.thickness->findings) error_finding = error_finding || f.severity == Severity::error;
+  }
+  if (failed > 0) {
+    remark(o.output, "pellicle thickness: " + std::to_string(failed) + " of " + std::to_string(results.results.size()) +
+                         " results failed; first: " + std::find_if(results.results.begin(), results.results.end(), [](const auto& r) {
+                                                         return !r.thickness;
+                                                       })->failure);
+  }
+  if (failed == results.results.size()) return kNoAnswer;
+  return o.output.strict && (failed > 0 || error_finding) ? kNoAnswer : kDone;
+}
+
+int thickness(const Options& o) {
+  const pellicle::Run run = o.run_file.empty() ? run_from_options(o) : read_run_file(o.run_file);
+  const ThicknessResults results = run_thickness(run);
+  deliver(o.output, o.output.json  ? thickness_json(run, results)
+                    : o.output.csv ? thickness_csv(results)
+                                   : thickness_text(run, results));
+  return exit_code(o, results);
+}
+
+}  // namespace
+
+Run add_thickness(CLI::App& app) {
+  auto o = std::make_shared<Options>();
+  CLI::App* c = app.add_subcommand("thickness", "Film thickness from a line in film and substrate, with budget and findings.");
+  c->footer("  pellicle thickness coupon.toml\n"
+            "  pellicle thickness coupon.toml --json --out coupon.json\n"
+            "  pellicle thickness --film SiO2 --substrate Si --line \"Si 2p\" --source \"Al Ka\" --emission-deg 34 \\\n"
+            "      --film-area 20000 --substrate-area 10000 --area-unit counts --reference-ratio 0.9329 \\\n"
+            "      --reference-ratio-sd 0.0093 --length-nm 3.448 --length-nm-sd 0.034\n"
+            "  Equation: t = L cos(emission) ln(1 + (film area / substrate area) / reference ratio)\n");
+  CLI::Option* file = c->add_option("run", o->run_file, "run file (TOML); - reads standard input")->type_name("RUN.toml");
+  c->add_option("--film", o->film, "film: catalogue id or formula")->type_name("MATERIAL");
+  add_material_options(*c, "film-", o->film_overrides);
+  c->add_option("--substrate", o->substrate, "substrate: catalogue id or formula")->type_name("MATERIAL");
+  c->add_option("--line", o->line, "line fitted in film and substrate, e.g. \"Si 2p\"")->type_name("LINE");
+  c->add_option("--source", o->source, "photon source, e.g. \"Al Ka\"")->type_name("NAME");
+  c->add_option("--photon-energy-ev", o->photon_energy_ev, "photon energy instead of --source")->type_name("NUMBER");
+  add_quantity(*c, "emission-deg", o->emission, "emission angle from the surface normal");
+  c->add_option("--takeoff-deg", o->takeoff_deg, "take-off angle from the surface plane instead")->type_name("NUMBER");
+  add_quantity(*c, "film-area", o->film_area, "fitted area of the film's component");
+  add_quantity(*c, "substrate-area", o->substrate_area, "fitted area of the substrate's component");
+  c->add_option("--area-unit", o->area_unit, "counts or arbitrary (default): counts get their Poisson uncertainty")->type_name("UNIT");
+  add_quantity(*c, "reference-ratio", o->reference_ratio, "film over substrate for infinitely thick film and bare substrate");
+  add_quantity(*c, "reference-film-area", o->reference_film_area, "area of an infinitely thick film");
+  add_quantity(*c, "reference-substrate-area", o->reference_substrate_area, "area of the bare substrate");
+  add_quantity(*c, "length-nm", o->length, "attenuation length in the film; absent: predicted");
+  c->add_option("--length-set", o->length_set, "calibrated lengths, e.g. sio2-2004 (see pellicle lengths --sets)")->type_name("SET");
+  add_output_options(*c, o->output, true, true);
+  for (CLI::Option* option : c->get_options()) {
+    static const std::vector<std::string> with_file = {"--json", "--csv", "--out", "--strict", "--quiet", "--help"};
+    const std::string name = option->get_name();
+    if (option != file && std::find(with_file.begin(), with_file.end(), name) == with_file.end()) option->excludes(file);
+  }
+  return [o] { return thickness(*o); };
+}
+
+}  // namespace pellicle::cli

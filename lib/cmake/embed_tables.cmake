@@ -1,0 +1,15 @@
+# Turns CSV tables into one translation unit, so that nothing is looked up on disk at run time.
+# Called as: cmake -DOUTPUT=file.cpp "-DTABLES=a.csv|b.csv" -P embed_tables.cmake
+string(REPLACE "|" ";" tables "${TABLES}")
+set(text "// Generated from reference/data by lib/cmake/embed_tables.cmake.\n#include \"base/embedded.hpp\"\n\n")
+string(APPEND text "namespace pellicle::detail {\nnamespace {\n")
+set(cases "")
+foreach(path IN LISTS tables)
+  get_filename_component(name "${path}" NAME_WE)
+  file(READ "${path}" content)
+  string(APPEND text "constexpr std::string_view k_${name} = R\"pellicle_table(${content})pellicle_table\";\n")
+  string(APPEND cases "  if (name == \"${name}\") return k_${name};\n")
+endforeach()
+string(APPEND text "}  // namespace\n\nstd::string_view embedded_table(std::string_view name) {\n${cases}  return {};\n}\n")
+string(APPEND text "}  // namespace pellicle::detail\n")
+file(WRITE "${OUTPUT}" "${text}")

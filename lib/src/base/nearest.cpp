@@ -1,0 +1,57 @@
+#include "base/nearest.hpp"
+
+#include <algorithm>
+#include <cctype>
+#include <numeric>
+
+namespace pellicle::detail {
+namespace {
+
+char lower(char c) { return static_cast<char>(std::tolower(static_cast<unsigned char>(c))); }
+
+}  // namespace
+
+std::size_t edit_distance(std::string_view a, std::string_view b) {
+  std::vector<std::size_t> row(b.size() + 1);
+  std::iota(row.begin(), row.end(), std::size_t{0});
+  for (std::size_t i = 0; i < a.size(); ++i) {
+    std::size_t diagonal = row[0];
+    row[0] = i + 1;
+    for (std::size_t j = 0; j < b.size(); ++j) {
+      const std::size_t substitute = diagonal + (lower(a[i]) == lower(b[j]) ? 0 : 1);
+      diagonal = row[j + 1];
+      row[j + 1] = std::min({substitute, row[j] + 1, row[j + 1] + 1});
+    }
+  }
+  return row[b.size()];
+}
+
+std::string nearest_name(std::string_view word, std::span<const std::string> known) {
+  if (word.size() > 64) return {};
+  std::string best;
+  std::size_t best_distance = std::max<std::size_t>(2, word.size() / 3) + 1;
+  for (const std::string& name : known) {
+    const std::size_t distance = edit_distance(word, name);
+    if (distance < best_distance) {
+      best_distance = distance;
+      best = name;
+    }
+  }
+  return best;
+}
+
+std::string join_names(std::span<const std::string> names) {
+  std::string text;
+  for (const std::string& name : names) text += (text.empty() ? "" : ", ") + name;
+  return text;
+}
+
+std::string name_hint(std::string_view word, std::span<const std::string> known) {
+  const std::string near = nearest_name(word, known);
+  if (!near.empty()) return "did you mean \"" + near + "\"?";
+  constexpr std::size_t kMost = 12;
+  if (known.size() <= kMost) return "expected one of: " + join_names(known);
+  return "expected one of: " + join_names(known.first(kMost)) + ", …";
+}
+
+}  // namespace pellicle::detail

@@ -1,0 +1,167 @@
+#include "io/toml_section.hpp"
+
+#include <cmath>
+
+#include "base/nearest.hpp"
+#include "pellicle/base/error.hpp"
+#include "pellicle/base/number.hpp"
+
+namespace pellicle::detail {
+namespace {
+
+std::string at(const std::string& file, const toml::source_position& position) {
+  return file + ":" + std::to_string(position.line) + ":" + std::to_string(position.column);
+}
+
+std::string kind_of(const toml::node& node) {
+  switch (node.type()) {
+    case toml::node_type::table: return "a table";
+    case toml::node_type::array: return "an array";
+    case toml::node_type::string: return "text";
+    case toml::node_type::integer:
+    case toml::node_type::floating_point: return "a number";
+    case toml::node_type::boolean: return "true or false";
+    default: return "a date or time";
+  }
+}
+
+double finite_number(const toml::node& node, const std::string& where) {
+  const std::optional<double> value = node.is_number() ? node.value<double>() : std::nullopt;
+  if (!value) throw InputError(where, "this is " + kind_of(node), "expected a number");
+  if (!std::isfinite(*value)) throw InputError(where, "this is not a finite number");
+  return *value;
+}
+
+}  // namespace
+
+toml::table parse_toml(std::string_view text, const std::string& file) {
+  try {
+    return toml::parse(text, file);
+  } catch (const toml::parse_error& e) {
+    throw InputError(at(file, e.source().begin), std::string(e.description()), "see https://toml.io for the notation");
+  }
+}
+
+Quantity read_quantity(const toml::node& node, const std::string& file, const std::string& where) {
+  if (!node.is_table()) {
+    if (!node.is_number()) {
+      throw InputError(where, "this is " + kind_of(node), "expected a number or { value = …, sd = … }");
+    }
+    return finite_number(node, where);
+  }
+  TomlSection table(*node.as_table(), file, "");
+  const std::optional<double> value = table.number("value");
+  const std::optional<double> sd = table.number("sd");
+  const std::optional<double> relative = table.number("relative_sd");
+  table.finish();
+  if (!value) throw InputError(where, "value is missing", "expected { value = …, sd = … }");
+  if (sd && relative) throw InputError(where, "both sd and relative_sd are given", "keep one");
+  Quantity quantity = *value;
+  if (sd) quantity.standard_uncertainty = *sd;
+  if (relative) quantity.standard_uncertainty = *relative * std::abs(*value);
+  if (quantity.standard_uncertainty && !(*quantity.standard_uncertainty >= 0.0)) {
+    throw InputError(where, "the standard uncertainty is negative", "expected a number >= 0");
+  }
+  return quantity;
+}
+
+TomlSection::TomlSection(const toml::table& table, std::string file, std::string path)
+    : table_(table), file_(std::move(file)), path_(std::move(path)) {}
+
+std::string TomlSection::dotted(std::string_view key) const {
+  return path_.empty() ? std::string(key) : path_ + "." + std::string(key);
+}
+
+std::string TomlSection::where(std::string_view key) const {
+  const toml::node* node = table_.get(key);
+  return at(file_, node ? node->source().begin : table_.source().begin) + ": " + dotted(key);
+}
+
+const toml::node* TomlSection::find(std::string_view key) {
+  known_.emplace_back(key);
+  return table_.get(key);
+}
+
+const toml::node* TomlSection::node(std::string_view key) { return find(key); }
+
+std::vector<std::string> TomlSection::keys() const {
+  std::vector<std::string> names;
+  for (const auto& [key, value] : table_) names.emplace_back(key.str());
+  return names;
+}
+
+std::optional<std::string> TomlSection::text(std::string_view key) {
+  const toml::node* node = find(key);
+  if (!node) return std::nullopt;
+  const std::optional<std::string> value = node->is_string() ? node->value<std::string>() : std::nullopt;
+  if (!value) throw InputError(where(key), "this is " + kind_of(*node), "expected text in quotation marks");
+  return value;
+}
+
+std::string TomlSection::required_text(std::string_view key) {
+  if (std::optional<std::string> value = text(key)) return *value;
+  throw InputError(where(key), "this key is missing", "expected text in quotation marks");
+}
+
+std::optional<double> TomlSection::number(std::string_view key) {
+  const toml::node* node = find(key);
+  if (!node) return std::nullopt;
+  return finite_number(*node, where(key));
+}
+
+std::optional<Quantity> TomlSection::quantity(std::string_view key) {
+  const toml::node* node = find(key);
+  if (!node) return std::nullopt;
+  return read_quantity(*node, file_, where(key));
+}
+
+std::optional<TomlSection> TomlSection::section(std::string_view key) {
+  const toml::node* node = find(key);
+  if (!node) return std::nullopt;
+  if (!node->is_table()) throw InputError(where(key), "this is " + kind_of(*node), "expected a table");
+  return TomlSection(*node->as_table(), file_, dotted(key));
+}
+
+std::vector<TomlSection> TomlSection::sections(std::string_view key) {
+  std::vector<TomlSection> all;
+  const toml::node* node = find(key);
+  if (!node) return all;
+  if (!node->is_array()) {
+    throw InputError(where(key), "this is " + kind_of(*node), "expected an array of tables, [[" + dotted(key) + "]]");
+  }
+  std::size_t number = 0;
+  for (const toml::node& entry : *node->as_array()) {
+    ++number;
+    if (!entry.is_table()) {
+      throw InputError(at(file_, entry.source().begin) + ": " + dotted(key), "this is " + kind_of(entry), "expected a table");
+    }
+    all.emplace_back(*entry.as_table(), file_, dotted(key) + "[" + std::to_string(number) + "]");
+  }
+  return all;
+}
+
+std::optional<std::string> TomlSection::echo(std::string_view key) {
+  const toml::node* node = find(key);
+  if (!node) return std::nullopt;
+  if (const auto text = node->value_exact<std::string>()) return text;
+  if (node->is_number()) return number_text(finite_number(*node, where(key)));
+  if (node->is_date()) {
+    const toml::date day = *node->value<toml::date>();
+    const auto two = [](unsigned n) { return (n < 10 ? "0" : "") + std::to_string(n); };
+    return std::to_string(day.year) + "-" + two(day.month) + "-" + two(day.day);
+  }
+  throw InputError(where(key), "this is " + kind_of(*node), "expected text or a number");
+}
+
+void TomlSection::finish() const {
+  for (const auto& [key, value] : table_) {
+    const std::string_view name = key.str();
+    bool known = false;
+    for (const std::string& k : known_) known = known || k == name;
+    if (known) continue;
+    throw InputError(at(file_, key.source().begin) + ": " + dotted(name), "unknown key \"" + std::string(name) + "\"",
+                     name_hint(name, known_));
+  }
+}
+
+}  // namespace pellicle::detail

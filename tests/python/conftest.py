@@ -1,4 +1,4 @@
-"""Fixtures of the Python tests, and the tally of rows compared with other libraries."""
+"""Fixtures of the Python tests, and the tally of rows compared with other libraries and calculations."""
 
 import collections
 import math
@@ -39,6 +39,7 @@ class Rows:
         return self
 
     def __exit__(self, kind, error, trace):
+        __tracebackhide__ = True
         if error is not None:
             return
         assert self._count > 0, f"no row of {self._kind} was compared"
@@ -96,7 +97,7 @@ def pytest_terminal_summary(terminalreporter, config):
     compared, refused = config.stash[COMPARED], config.stash[REFUSED]
     if not compared:
         return
-    terminalreporter.section("rows compared with other libraries")
+    terminalreporter.section("rows compared with other libraries and independent calculations")
     for kind, count in sorted(compared.items()):
         terminalreporter.write_line(f"{count:7d}  {kind}")
     terminalreporter.write_line(f"{compared.total():7d}  in all")

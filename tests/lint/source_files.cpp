@@ -19,6 +19,11 @@ bool left_behind(const std::string& name) {
   return names.contains(name) || name.starts_with("build-") || name.ends_with(".egg-info");
 }
 
+/// A folder in which CMake or a virtual environment builds, whatever its name.
+bool is_build_folder(const fs::path& folder) {
+  return fs::exists(folder / "CMakeCache.txt") || fs::exists(folder / "pyvenv.cfg");
+}
+
 bool is_text(const std::string& text) { return text.find('\0') == std::string::npos; }
 
 }  // namespace
@@ -44,7 +49,7 @@ std::vector<SourceFile> source_files(const std::vector<std::string>& folders) {
     if (fs::is_regular_file(start)) add(start);
     if (!fs::is_directory(start)) continue;
     for (auto entry = fs::recursive_directory_iterator(start); entry != fs::recursive_directory_iterator(); ++entry) {
-      if (left_behind(entry->path().filename().string())) {
+      if (left_behind(entry->path().filename().string()) || is_build_folder(entry->path())) {
         entry.disable_recursion_pending();
       } else if (entry->is_regular_file()) {
         add(entry->path());
@@ -59,7 +64,7 @@ std::vector<std::string> top_entries() {
   std::vector<std::string> names;
   for (const auto& entry : fs::directory_iterator(source_folder())) {
     const std::string name = entry.path().filename().string();
-    if (!left_behind(name)) names.push_back(name);
+    if (!left_behind(name) && !is_build_folder(entry.path())) names.push_back(name);
   }
   return names;
 }

@@ -88,6 +88,10 @@ def coupon(tmp_path):
     return tmp_path / "coupon-07.toml"
 
 
+def pytest_addoption(parser):
+    parser.addoption("--rewrite-readme", action="store_true", help="put the present output of its commands into README.md")
+
+
 def pytest_configure(config):
     config.stash[COMPARED] = collections.Counter()
     config.stash[REFUSED] = collections.Counter()

@@ -88,8 +88,9 @@ def test_both_doors_agree_on_a_run_with_a_failed_spot(pellicle_command, two_ener
 
 def test_the_run_is_the_calculation_of_thickness_from_areas(two_energies):
     first = pellicle.thickness(two_energies)["results"][0]
-    pairs = [(first[key]["value"], first[key]["sd"]) for key in ("film_area", "substrate_area", "length_nm", "substrate_line_length_nm")]
-    film, substrate, film_length, substrate_length = pairs
+    film, substrate, film_length, substrate_length = (
+        (first[key]["value"], first[key]["sd"])
+        for key in ("film_area", "substrate_area", "length_nm", "substrate_line_length_nm"))
     # u = sqrt(N + 2B)/t for N net counts over B background counts in t seconds.
     assert film == (310.5, pytest.approx(np.sqrt(310.5 * 12 + 2 * 800) / 12, rel=1e-14))
     assert film_length == (2.6, pytest.approx(0.08 * 2.6, rel=1e-14)) and first["length_nm"]["origin"] == "given"
@@ -173,8 +174,8 @@ def test_lines(pellicle_command):
     assert {"Ti 1s", "Ti 2p", "Ti 2p1/2", "Ti 2p3/2"} <= {row["line"] for row in shown}
     for row in shown:
         assert row["binding_energy_ev"] == pellicle.binding_energy_ev(row["line"])
-        for key, function in (("kinetic_energy_ev", pellicle.kinetic_energy_ev), ("cross_section_barn", pellicle.cross_section_barn),
-                              ("asymmetry", pellicle.asymmetry)):
+        for key, function in (("kinetic_energy_ev", pellicle.kinetic_energy_ev),
+                              ("cross_section_barn", pellicle.cross_section_barn), ("asymmetry", pellicle.asymmetry)):
             if row[key] is not None:
                 assert row[key] == function(row["line"], source="Mg Ka")
                 continue

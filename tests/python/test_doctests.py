@@ -23,7 +23,7 @@ def documented():
 
 
 DOCSTRINGS = dict(documented())
-FUNCTIONS = [name for name in pellicle.__all__ if callable(getattr(pellicle, name)) and not inspect.isclass(getattr(pellicle, name))]
+FUNCTIONS = [name for name in pellicle.__all__ if inspect.isroutine(getattr(pellicle, name))]
 
 
 @pytest.mark.parametrize("name", [name for name, text in DOCSTRINGS.items() if ">>>" in text])

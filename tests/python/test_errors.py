@@ -41,7 +41,8 @@ INPUT_ERRORS = {
     "density of zero": (lambda: pellicle.Material(formula="Al2O3", density_g_cm3=0.0), "density_g_cm3"),
     "density not a number": (lambda: pellicle.Material(formula="Al2O3", density_g_cm3=math.nan), "density_g_cm3"),
     "negative band gap": (lambda: pellicle.Material(formula="Al2O3", density_g_cm3=3.0, band_gap_ev=-1.0), "band_gap_ev"),
-    "no valence electrons": (lambda: pellicle.Material(formula="Al2O3", density_g_cm3=3.0, valence_electrons=0.0), "valence_electrons"),
+    "no valence electrons": (lambda: pellicle.Material(formula="Al2O3", density_g_cm3=3.0, valence_electrons=0.0),
+                             "valence_electrons"),
     "unknown element": (lambda: pellicle.Material(formula="AlX3", density_g_cm3=3.0), "character 3"),
     "open bracket": (lambda: pellicle.Material(formula="Al2(SO4", density_g_cm3=3.0), "character 4"),
     "empty formula": (lambda: pellicle.Material(formula="", density_g_cm3=3.0), "empty"),
@@ -115,7 +116,8 @@ RUN_FAULTS = {
     "unknown level": ('level = "Al 2p"', 'level = "Al 3d"', ["line[1].level", "Al 2p3/2"]),
     "negative ratio": ("ratio = { value = 0.65", "ratio = { value = -0.65", ["reference[1].ratio", "expected a number > 0"]),
     "negative uncertainty": ("ratio = { value = 0.65, sd = 0.03", "ratio = { value = 0.65, sd = -0.03", ["expected a number >= 0"]),
-    "text for a number": ("emission_sd_deg = 0.5", 'emission_sd_deg = "0.5"', ["emission_sd_deg", "this is text", "expected a number"]),
+    "text for a number": ("emission_sd_deg = 0.5", 'emission_sd_deg = "0.5"',
+                          ["emission_sd_deg", "this is text", "expected a number"]),
     "TOML": ("[sample]", "[sample", ["expected"]),
 }
 

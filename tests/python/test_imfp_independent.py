@@ -10,7 +10,8 @@ import pytest
 
 import pellicle
 
-ENERGIES_EV = np.array([50.0, 99.5, 100.0, 200.0, 500.0, 1000.0, 1253.6, 1486.6, 3000.0, 5414.8, 9251.7, 10000.0, 30000.0, 200000.0])
+ENERGIES_EV = np.array([50.0, 99.5, 100.0, 200.0, 500.0, 1000.0, 1253.6, 1486.6, 3000.0, 5414.8, 9251.7, 10000.0,
+                        30000.0, 200000.0])
 ROUNDING = 1e-13  # the same sum in another order
 
 # Valence electrons per atom, convention of the TPP papers.

@@ -86,7 +86,8 @@ def test_the_lower_end_of_an_interval_is_never_below_zero():
     assert "interval_reaches_zero" in {f.code for f in result.findings}
 
 
-SENSITIVE = {"ratio": 2.0, "reference_ratio": 0.72, "film_line_length_nm": 2.8, "substrate_line_length_nm": 2.3, "emission_deg": 40.0}
+SENSITIVE = {"ratio": 2.0, "reference_ratio": 0.72, "film_line_length_nm": 2.8, "substrate_line_length_nm": 2.3,
+             "emission_deg": 40.0}
 
 
 @pytest.mark.parametrize("ratio", [0.05, 0.7, 2.0, 30.0])

@@ -37,7 +37,8 @@ def test_the_changelog_knows_the_version(root):
 
 
 def test_the_installed_command_gives_the_same_numbers(coupon):
-    shown = subprocess.run([INSTALLED_COMMAND, "thickness", coupon, "--csv"], capture_output=True, encoding="utf-8", check=True, timeout=60)
+    shown = subprocess.run([INSTALLED_COMMAND, "thickness", coupon, "--csv"], capture_output=True, encoding="utf-8", check=True,
+                           timeout=60)
     first = shown.stdout.splitlines()[1].split(",")
     assert float(first[5]) == pellicle.thickness(coupon)["results"][0]["thickness_nm"]["value"]
 

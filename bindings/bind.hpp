@@ -30,8 +30,7 @@ inline std::span<const double> span_of(const DoubleArray& array) {
   return {array.data(), static_cast<std::size_t>(array.size())};
 }
 
-/// Names of the inputs of an array function that are not ok, in one error.
-/// @throws DomainError / InputError for the first element whose status is not ok
+/// @throws InputError, DomainError or ConvergenceError for the first element whose status is not ok
 void raise_for_status(const char* function, std::span<const Status> status);
 
 /// A quantity in Python is a number, or a pair (value, standard uncertainty).

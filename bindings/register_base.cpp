@@ -15,6 +15,7 @@ void raise_for_status(const char* function, std::span<const Status> status) {
                            std::to_string(first) + ": " + status_text(status[first]);
   const std::string hint = "call it with status=True to get a status per element";
   if (status[first] == Status::invalid_input) throw InputError(function, fact, hint);
+  if (status[first] == Status::not_converged) throw ConvergenceError(function, fact, hint);
   throw DomainError(function, fact, hint);
 }
 
@@ -27,6 +28,9 @@ void register_base(py::module_& m) {
   domain.attr("__doc__") = "Legal input for which no answer exists. Also an ArithmeticError.";
   auto convergence = py::register_exception<ConvergenceError>(m, "ConvergenceError", py::make_tuple(error, py::handle(PyExc_ArithmeticError)));
   convergence.attr("__doc__") = "A solver stopped before its tolerance. Also an ArithmeticError.";
+
+  // Tracebacks name the package, where users find the types.
+  for (py::handle type : {py::handle(error), py::handle(input), py::handle(domain), py::handle(convergence)}) type.attr("__module__") = "pellicle";
 
   py::class_<Finding>(m, "Finding", "What a reader of a result must know besides the number.")
       .def_readonly("code", &Finding::code, "Stable code for scripts.")

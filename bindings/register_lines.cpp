@@ -14,6 +14,11 @@ void register_lines(py::module_& m) {
   m.def("photon_energy_ev", [](const std::string& source) { return photon_source(source).photon_energy_ev; }, "source"_a,
         R"(Photon energy of a named source [eV]: "Mg Ka", "Al Ka", "Ag La", "Cr Ka", "Ga Ka", ...
 
+Raises
+------
+InputError
+    Unknown source; the message lists the known ones.
+
 Examples
 --------
 >>> import pellicle
@@ -37,7 +42,7 @@ Examples
 --------
 >>> import pellicle
 >>> pellicle.binding_energy_ev("Au 4f7/2")
-84.0
+83.9
 )");
   m.def("kinetic_energy_ev", [](const std::string& line, const std::string& source) {
           return kinetic_energy_ev(core_level(line), photon_source(source));

@@ -31,7 +31,7 @@ Examples
 >>> import pellicle
 >>> film = pellicle.Material(formula="Al2O3", density_g_cm3=3.1, band_gap_ev=7.0)
 >>> film.molar_mass_g_mol
-101.961...
+101.96...
 )")
       .def(py::init([](const std::string& formula, double density, std::optional<double> gap, std::optional<double> electrons) {
              return make_material(formula, density, gap, electrons);

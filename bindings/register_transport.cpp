@@ -19,10 +19,10 @@ py::dict refusals(const AttenuationLength& length) {
   return reasons;
 }
 
-py::object imfp(const PyMaterial& which, const DoubleArray& energy_ev, const std::string& model_name, bool want_status) {
+/// Values and status codes of the shape of the energies.
+py::tuple imfp_arrays(const PyMaterial& which, const DoubleArray& energy_ev, const std::string& model_name) {
   const Material material = material_of(which);
   const ImfpModel model = imfp_model(model_name);
-  if (energy_ev.ndim() == 0 && !want_status) return py::float_(imfp_nm(material, *energy_ev.data(), model));
   const std::vector<py::ssize_t> shape(energy_ev.shape(), energy_ev.shape() + energy_ev.ndim());
   py::array_t<double> values(shape);
   py::array_t<std::uint8_t> codes(shape);
@@ -32,9 +32,7 @@ py::object imfp(const PyMaterial& which, const DoubleArray& energy_ev, const std
     const py::gil_scoped_release release;
     imfp_nm(material, span_of(energy_ev), model, out, status);
   }
-  if (want_status) return py::make_tuple(values, codes);
-  raise_for_status("imfp_nm", status);
-  return std::move(values);
+  return py::make_tuple(values, codes);
 }
 
 }  // namespace
@@ -55,42 +53,10 @@ void register_transport(py::module_& m) {
       .def("__repr__", [](const AttenuationLength& l) {
         return "<AttenuationLength " + value_with_uncertainty(l.value_nm, l.standard_uncertainty_nm) + " nm, " + l.model + ">";
       });
-  m.def("imfp_nm", &imfp, "material"_a, "energy_ev"_a, py::kw_only(), "model"_a = "TPP-2M", "status"_a = false,
-        R"(Inelastic mean free path [nm].
-
-Parameters
-----------
-material : str or Material
-    Catalogue id, formula, or Material.
-energy_ev : float or array
-    Kinetic energy [eV], any shape.
-model : str
-    "TPP-2M" (relativistic, 50 eV to 200 keV) or "S1" (100 eV to 10 keV).
-status : bool
-    False: an element that fails raises. True: return (values, codes); a failed element is NaN with a code
-    other than 0 (1 invalid input, 2 out of range, 3 no solution).
-
-Returns
--------
-float, or array of the shape of energy_ev.
-
-Raises
-------
-DomainError
-    The model refuses this material or energy.
-
-References
-----------
-Shinotsuka et al., Surf. Interface Anal. 47 (2015) 871; Seah, Surf. Interface Anal. 44 (2012) 497.
-
-Examples
---------
->>> import pellicle
->>> round(pellicle.imfp_nm("SiO2", 1387.1), 3)
-3.889
->>> pellicle.imfp_nm("SiO2", [500.0, 1000.0], model="S1").shape
-(2,)
-)");
+  m.def("_imfp_arrays", &imfp_arrays);
+  m.def("_imfp_scalar", [](const PyMaterial& material, double energy, const std::string& model) {
+    return imfp_nm(material_of(material), energy, imfp_model(model));
+  });
   m.def("attenuation_length", [](const PyMaterial& material, double energy) { return attenuation_length(material_of(material), energy); },
         "material"_a, "energy_ev"_a,
         R"(Predicted effective attenuation length for film thickness, with its uncertainty.

@@ -14,12 +14,14 @@ struct Options {
 };
 
 int check(const Options& o) {
-  const pellicle::Run run = read_run_file(o.run_file);
+  pellicle::Run run = read_run_file(o.run_file);
+  run.uncertainty.method = IntervalMethod::gum;  // what is missing shows without drawing
   const ThicknessResults results = run_thickness(run);
   deliver(o.output, o.output.json ? check_json(run, results) : check_text(run, results));
-  const bool any = std::any_of(results.results.begin(), results.results.end(), [](const auto& r) { return r.thickness.has_value(); });
-  const bool all = std::all_of(results.results.begin(), results.results.end(), [](const auto& r) { return r.thickness.has_value(); });
-  return !any || (o.output.strict && !all) ? kNoAnswer : kDone;
+  const bool any = std::any_of(results.results.begin(), results.results.end(), [](const auto& r) { return r.failure.empty(); });
+  const bool all = std::all_of(results.results.begin(), results.results.end(), [](const auto& r) { return r.failure.empty(); });
+  const bool error_finding = std::any_of(results.findings.begin(), results.findings.end(), [](const Finding& f) { return f.severity == Severity::error; });
+  return !any || (o.output.strict && (!all || error_finding)) ? kNoAnswer : kDone;
 }
 
 }  // namespace

@@ -1,5 +1,7 @@
 #include "command.hpp"
 
+#include <unistd.h>
+
 #include <cstdio>
 #include <iostream>
 
@@ -29,6 +31,23 @@ void deliver(const Output& output, const std::string& text) {
 
 void remark(const Output& output, const std::string& text) {
   if (!output.quiet) std::cerr << text << '\n';
+}
+
+ProgressLine::ProgressLine(const Output& output, std::string what)
+    : what_(std::move(what)), enabled_(!output.quiet && ::isatty(STDERR_FILENO) == 1), last_(std::chrono::steady_clock::now()) {}
+
+bool ProgressLine::operator()(std::size_t done, std::size_t all) {
+  const auto now = std::chrono::steady_clock::now();
+  if (!enabled_ || done == all || now - last_ < std::chrono::milliseconds(300)) return true;
+  last_ = now;
+  shown_ = true;
+  std::cerr << '\r' << done << " of " << all << ' ' << what_ << std::flush;
+  return true;
+}
+
+void ProgressLine::clear() {
+  if (shown_) std::cerr << "\r\033[K" << std::flush;
+  shown_ = false;
 }
 
 std::optional<Quantity> QuantityOption::quantity(const std::string& name) const {

@@ -1,8 +1,10 @@
 #pragma once
 /// What every command shares: the way results leave, and how a command joins the program.
 
+#include <chrono>
 #include <functional>
 #include <optional>
+#include <stdexcept>
 #include <string>
 
 #include <CLI/CLI.hpp>
@@ -13,6 +15,12 @@ namespace pellicle::cli {
 
 /// Exit codes of the program.
 enum ExitCode { kDone = 0, kNoAnswer = 1, kUsage = 2, kInput = 3 };
+
+/// The command line itself is wrong (exit code 2), in a way the option parser cannot see.
+class UsageError : public std::runtime_error {
+ public:
+  using std::runtime_error::runtime_error;
+};
 
 /// Options common to the commands that give results.
 struct Output {
@@ -31,6 +39,21 @@ void deliver(const Output& output, const std::string& text);
 
 /// Line on standard error, unless --quiet.
 void remark(const Output& output, const std::string& text);
+
+/// Counts on standard error while long work runs, on a terminal only and not under --quiet.
+class ProgressLine {
+ public:
+  ProgressLine(const Output& output, std::string what);
+  /// Shows the count at most a few times a second; always true.
+  bool operator()(std::size_t done, std::size_t all);
+  /// Removes the line.
+  void clear();
+
+ private:
+  std::string what_;
+  bool enabled_, shown_ = false;
+  std::chrono::steady_clock::time_point last_;
+};
 
 /// A number with its standard uncertainty on the command line: --name and --name-sd.
 struct QuantityOption {

@@ -1,5 +1,6 @@
 // pellicle lengths: mean free paths and attenuation lengths of a material.
 
+#include <algorithm>
 #include <memory>
 
 #include "command.hpp"
@@ -47,10 +48,12 @@ int lengths(const Options& o) {
   std::vector<LengthQuery> queries;
   for (const std::string& name : o.materials) {
     const Material material = define_material(name, o.overrides);
-    for (const double energy : energies(o)) queries.push_back({name, material, energy, attenuation_length(material, energy)});
+    for (const double energy : energies(o)) queries.push_back({name, material, energy, survey_lengths(material, energy)});
   }
   deliver(o.output, o.output.json ? lengths_json(queries) : lengths_text(queries));
-  return kDone;
+  const bool all = std::all_of(queries.begin(), queries.end(), [](const LengthQuery& q) { return !q.length.model.empty(); });
+  if (!all) remark(o.output, "pellicle lengths: no attenuation-length model holds for some of these; see the remarks");
+  return all ? kDone : kNoAnswer;
 }
 
 }  // namespace

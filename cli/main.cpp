@@ -51,8 +51,19 @@ int run(int argc, char** argv) {
   };
   for (auto* setup : {add_thickness, add_lengths, add_materials, add_lines, add_check, add_new}) add(setup);
 
+  std::string topic;
+  CLI::App* help = app.add_subcommand("help", "Help on a command.");
+  help->add_option("command", topic, "name of a command");
+
   try {
     app.parse(argc, argv);
+    if (help->parsed()) {
+      const CLI::App* asked = topic.empty() ? &app : nullptr;
+      for (const auto& [command, action] : commands) asked = command->get_name() == topic ? command : asked;
+      if (!asked) throw CLI::ExtrasError("pellicle", std::vector<std::string>{topic});
+      std::cout << asked->help(topic.empty() ? "" : "pellicle");
+      return kDone;
+    }
   } catch (const CLI::CallForHelp&) {
     const auto used = app.get_subcommands();
     std::cout << (used.empty() ? app.help() : used.front()->help("pellicle"));
@@ -70,6 +81,9 @@ int run(int argc, char** argv) {
     if (!command->parsed()) continue;
     try {
       return action();
+    } catch (const UsageError& e) {
+      std::cerr << "pellicle " << command->get_name() << ": " << e.what() << "; see pellicle " << command->get_name() << " --help\n";
+      return kUsage;
     } catch (const InputError& e) {
       std::cerr << "pellicle " << command->get_name() << ": " << e.what() << '\n';
       return kInput;

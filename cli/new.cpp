@@ -26,7 +26,7 @@ int make_new(const Options& o) {
   }
   write_text_file(table.string(), starter_areas());
   write_text_file(run.string(), starter_run(table.filename().string()));
-  remark(o.output, "wrote " + run.string() + " and " + table.string() + "; next: pellicle thickness " + run.string());
+  remark(o.output, "wrote " + run.string() + " and " + table.string() + "; next: pellicle check " + run.string());
   return kDone;
 }
 

@@ -1,5 +1,6 @@
 // pellicle thickness: film thickness from a run file, or from a few numbers on the command line.
 
+#include <algorithm>
 #include <memory>
 
 #include "command.hpp"
@@ -11,10 +12,16 @@ namespace {
 
 struct Options {
   std::string run_file;
+  std::vector<std::string> tables;
+  std::string interval;
+  std::optional<std::size_t> draws;
+  std::optional<std::uint64_t> seed;
+  std::string reference_table;
+  bool reference_computed = false;
   std::string film, substrate, line, source, length_set, area_unit = "arbitrary";
-  std::optional<double> photon_energy_ev, takeoff_deg;
+  std::optional<double> photon_energy_ev;
   MaterialOverrides film_overrides;
-  QuantityOption emission, film_area, substrate_area, reference_ratio, reference_film_area, reference_substrate_area, length;
+  QuantityOption emission, takeoff, film_area, substrate_area, reference_ratio, reference_film_area, reference_substrate_area, length;
   Output output;
 };
 
@@ -24,7 +31,8 @@ auto for_option(const std::string& option, Function&& function) {
   try {
     return function();
   } catch (const InputError& e) {
-    throw InputError(e.where().empty() ? option : option + ": " + e.where(), e.fact(), e.hint());
+    const bool same = e.where() == "emission_deg" || e.where() == "takeoff_deg" || e.where().empty();
+    throw InputError(same ? option : option + ": " + e.where(), e.fact(), e.hint());
   }
 }
 
@@ -52,24 +60,25 @@ pellicle::Run run_from_options(const Options& o) {
   run.area_unit = for_option("--area-unit", [&] { return area_unit(o.area_unit); });
 
   const std::optional<Quantity> emission = o.emission.quantity("emission-deg");
-  if (emission && o.takeoff_deg) throw InputError("--takeoff-deg", "both --emission-deg and --takeoff-deg are given", "keep one; emission = 90 - take-off");
-  if (!emission && !o.takeoff_deg) throw InputError("--emission-deg", "it is missing", "give --emission-deg, counted from the surface normal, or --takeoff-deg, from the surface");
-  if (emission) {
+  const std::optional<Quantity> takeoff = o.takeoff.quantity("takeoff-deg");
+  if (emission && takeoff) throw InputError("--takeoff-deg", "both --emission-deg and --takeoff-deg are given", "keep one; emission = 90 - take-off");
+  if (!emission && !takeoff) throw InputError("--emission-deg", "it is missing", "give --emission-deg, counted from the surface normal, or --takeoff-deg, from the surface");
+  run.emission_sd_deg = emission ? emission->standard_uncertainty : takeoff->standard_uncertainty;
+  run.emission_deg = for_option(emission ? "--emission-deg" : "--takeoff-deg", [&] {
+    if (takeoff) return emission_deg_from_takeoff(takeoff->value);
     check_emission_deg(emission->value);
-    run.emission_deg = emission->value;
-    run.emission_sd_deg = emission->standard_uncertainty;
-  } else {
-    run.emission_deg = emission_deg_from_takeoff(*o.takeoff_deg);
-    run.emission_sd_deg = o.emission.sd;
-  }
+    return emission->value;
+  });
 
   Line film;
   film.label = "film";
   film.level = for_option("--line", [&] { return core_level(required(o.line, "--line")); });
-  film.kinetic_energy_ev = kinetic_energy_ev(*film.level, run.source);
+  film.kinetic_energy_ev = for_option("--line", [&] { return kinetic_energy_ev(*film.level, run.source); });
   film.from = "film";
+  film.components = {{film.label, 1.0}};
   Line substrate = film;
   substrate.label = substrate.from = kSubstrate;
+  substrate.components = {{substrate.label, 1.0}};
   if (const auto length = o.length.quantity("length-nm")) {
     if (!run.length_set.empty()) throw InputError("--length-set", "both --length-nm and --length-set are given", "keep one");
     if (!(length->value > 0.0)) throw InputError("--length-nm", number_text(length->value) + " is not a length", "expected a number > 0");
@@ -78,15 +87,23 @@ pellicle::Run run_from_options(const Options& o) {
   film.reference_area = o.reference_film_area.quantity("reference-film-area");
   substrate.reference_area = o.reference_substrate_area.quantity("reference-substrate-area");
   const std::optional<Quantity> ratio = o.reference_ratio.quantity("reference-ratio");
-  if (ratio && (film.reference_area || substrate.reference_area)) {
+  const bool computed = o.reference_computed;
+  const int stated = (ratio ? 1 : 0) + (computed ? 1 : 0) + (o.reference_table.empty() ? 0 : 1);
+  if (stated > 1) throw InputError("--reference-ratio", "more than one reference is given", "keep one of --reference-ratio, --reference-table and --reference-computed");
+  if (stated > 0 && (film.reference_area || substrate.reference_area)) {
     throw InputError("--reference-ratio", "both a reference ratio and reference areas are given", "keep one kind");
   }
-  if (!ratio && !(film.reference_area && substrate.reference_area)) {
+  if (stated == 0 && !(film.reference_area && substrate.reference_area)) {
     throw InputError("--reference-ratio", "no reference ratio is given",
-                     "give --reference-ratio, or both --reference-film-area and --reference-substrate-area");
+                     "give --reference-ratio, both reference areas, --reference-table or --reference-computed");
   }
   run.lines = {film, substrate};
-  if (ratio) run.references.push_back({"film", std::string(kSubstrate), *ratio});
+  if (ratio || computed || !o.reference_table.empty()) {
+    ReferenceRatio reference{"film", std::string(kSubstrate), ReferenceOrigin::given, ratio.value_or(0.0), o.reference_table};
+    if (computed) reference.origin = ReferenceOrigin::computed;
+    if (!o.reference_table.empty()) reference.origin = ReferenceOrigin::table;
+    run.references.push_back(std::move(reference));
+  }
 
   for (const auto& [option, name, label] : {std::tuple{&o.film_area, "film-area", "film"}, {&o.substrate_area, "substrate-area", "substrate"}}) {
     const Quantity area = required(*option, name);
@@ -96,7 +113,6 @@ pellicle::Run run_from_options(const Options& o) {
     row.line = label;
     row.area = area.value;
     row.area_sd = area.standard_uncertainty;
-    row.place = "--" + std::string(name);
     run.areas.push_back(row);
   }
   return run;
@@ -104,29 +120,41 @@ pellicle::Run run_from_options(const Options& o) {
 
 int exit_code(const Options& o, const ThicknessResults& results) {
   std::size_t failed = 0;
-  bool error_finding = false;
+  const std::string* first = nullptr;
   for (const ThicknessResult& r : results.results) {
-    if (!r.thickness) {
-      ++failed;
-      continue;
-    }
-    for (const Finding& f : r.thickness->findings) error_finding = error_finding || f.severity == Severity::error;
+    if (r.failure.empty()) continue;
+    ++failed;
+    if (!first) first = &r.failure;
   }
+  const bool error_finding = std::any_of(results.findings.begin(), results.findings.end(), [](const Finding& f) { return f.severity == Severity::error; });
   if (failed > 0) {
     remark(o.output, "pellicle thickness: " + std::to_string(failed) + " of " + std::to_string(results.results.size()) +
-                         " results failed; first: " + std::find_if(results.results.begin(), results.results.end(), [](const auto& r) {
-                                                         return !r.thickness;
-                                                       })->failure);
+                         " results failed; first: " + *first);
   }
   if (failed == results.results.size()) return kNoAnswer;
   return o.output.strict && (failed > 0 || error_finding) ? kNoAnswer : kDone;
 }
 
+void set_uncertainty(const Options& o, pellicle::Run& run) {
+  if (o.draws) {
+    if (*o.draws < 1000 || *o.draws > 100'000'000) throw InputError("--draws", std::to_string(*o.draws) + " is out of range", "expected 1000 to 1e8");
+    run.uncertainty.draws = *o.draws;
+    run.uncertainty.method = IntervalMethod::monte_carlo;
+  }
+  if (o.seed) run.uncertainty.seed = *o.seed;
+  if (o.interval == "gum") run.uncertainty.method = IntervalMethod::gum;
+  if (o.interval == "monte-carlo") run.uncertainty.method = IntervalMethod::monte_carlo;
+  if (o.interval == "adaptive") run.uncertainty.method = IntervalMethod::adaptive_monte_carlo;
+}
+
 int thickness(const Options& o) {
-  const pellicle::Run run = o.run_file.empty() ? run_from_options(o) : read_run_file(o.run_file);
-  const ThicknessResults results = run_thickness(run);
+  pellicle::Run run = o.run_file.empty() ? run_from_options(o) : read_run_file(o.run_file, o.tables);
+  set_uncertainty(o, run);
+  ProgressLine progress(o.output, "results");
+  const ThicknessResults results = run_thickness(run, [&](std::size_t done, std::size_t all) { return progress(done, all); });
+  progress.clear();
   deliver(o.output, o.output.json  ? thickness_json(run, results)
-                    : o.output.csv ? thickness_csv(results)
+                    : o.output.csv ? thickness_csv(run, results)
                                    : thickness_text(run, results));
   return exit_code(o, results);
 }
@@ -138,11 +166,13 @@ Run add_thickness(CLI::App& app) {
   CLI::App* c = app.add_subcommand("thickness", "Film thickness from a line in film and substrate, with budget and findings.");
   c->footer("  pellicle thickness coupon.toml\n"
             "  pellicle thickness coupon.toml --json --out coupon.json\n"
+            "  pellicle thickness coupon.toml --areas week-1.csv week-2.csv --csv --out all.csv\n"
             "  pellicle thickness --film SiO2 --substrate Si --line \"Si 2p\" --source \"Al Ka\" --emission-deg 34 \\\n"
             "      --film-area 20000 --substrate-area 10000 --area-unit counts --reference-ratio 0.9329 \\\n"
             "      --reference-ratio-sd 0.0093 --length-nm 3.448 --length-nm-sd 0.034\n"
             "  Equation: t = L cos(emission) ln(1 + (film area / substrate area) / reference ratio)\n");
   CLI::Option* file = c->add_option("run", o->run_file, "run file (TOML); - reads standard input")->type_name("RUN.toml");
+  c->add_option("--areas", o->tables, "area tables that take the place of the run file's; results name their table")->type_name("TABLE.csv");
   c->add_option("--film", o->film, "film: catalogue id or formula")->type_name("MATERIAL");
   add_material_options(*c, "film-", o->film_overrides);
   c->add_option("--substrate", o->substrate, "substrate: catalogue id or formula")->type_name("MATERIAL");
@@ -150,22 +180,37 @@ Run add_thickness(CLI::App& app) {
   c->add_option("--source", o->source, "photon source, e.g. \"Al Ka\"")->type_name("NAME");
   c->add_option("--photon-energy-ev", o->photon_energy_ev, "photon energy instead of --source")->type_name("NUMBER");
   add_quantity(*c, "emission-deg", o->emission, "emission angle from the surface normal");
-  c->add_option("--takeoff-deg", o->takeoff_deg, "take-off angle from the surface plane instead")->type_name("NUMBER");
+  add_quantity(*c, "takeoff-deg", o->takeoff, "take-off angle from the surface plane instead");
   add_quantity(*c, "film-area", o->film_area, "fitted area of the film's component");
   add_quantity(*c, "substrate-area", o->substrate_area, "fitted area of the substrate's component");
   c->add_option("--area-unit", o->area_unit, "counts or arbitrary (default): counts get their Poisson uncertainty")->type_name("UNIT");
   add_quantity(*c, "reference-ratio", o->reference_ratio, "film over substrate for infinitely thick film and bare substrate");
+  c->add_option("--reference-table", o->reference_table, "tabulated reference ratio, e.g. sio2-si")->type_name("KEY");
+  c->add_flag("--reference-computed", o->reference_computed, "compute the reference ratio from densities and mean free paths");
   add_quantity(*c, "reference-film-area", o->reference_film_area, "area of an infinitely thick film");
   add_quantity(*c, "reference-substrate-area", o->reference_substrate_area, "area of the bare substrate");
   add_quantity(*c, "length-nm", o->length, "attenuation length in the film; absent: predicted");
   c->add_option("--length-set", o->length_set, "calibrated lengths, e.g. sio2-2004 (see pellicle lengths --sets)")->type_name("SET");
+  c->add_option("--interval", o->interval, "how the 95 % interval is found; default: monte-carlo for up to 20 results, else gum")
+      ->check(CLI::IsMember({"gum", "monte-carlo", "adaptive"}))
+      ->type_name("METHOD");
+  c->add_option("--draws", o->draws, "Monte Carlo draws (default 1000000)")->type_name("NUMBER");
+  c->add_option("--seed", o->seed, "seed of the Monte Carlo draws (default 1)")->type_name("NUMBER");
   add_output_options(*c, o->output, true, true);
-  for (CLI::Option* option : c->get_options()) {
-    static const std::vector<std::string> with_file = {"--json", "--csv", "--out", "--strict", "--quiet", "--help"};
-    const std::string name = option->get_name();
-    if (option != file && std::find(with_file.begin(), with_file.end(), name) == with_file.end()) option->excludes(file);
+  // What describes a measurement on the command line makes no sense beside a run file.
+  static const std::vector<std::string> with_file = {"--json", "--csv", "--out", "--strict", "--quiet", "--help",
+                                                     "--areas", "--interval", "--draws", "--seed"};
+  std::vector<const CLI::Option*> alone;
+  for (const CLI::Option* option : c->get_options()) {
+    if (option != file && std::find(with_file.begin(), with_file.end(), option->get_name()) == with_file.end()) alone.push_back(option);
   }
-  return [o] { return thickness(*o); };
+  return [o, alone] {
+    const auto used = std::find_if(alone.begin(), alone.end(), [](const CLI::Option* option) { return option->count() > 0; });
+    if (o->run_file.empty() && !o->tables.empty()) throw UsageError("--areas needs a run file");
+    if (!o->run_file.empty() && used != alone.end()) throw UsageError((*used)->get_name() + " cannot stand beside a run file; write it into the run file");
+    if (o->run_file.empty() && used == alone.end()) throw UsageError("give a run file, or --film, --substrate, --line, --source, an angle, areas and a reference");
+    return thickness(*o);
+  };
 }
 
 }  // namespace pellicle::cli

@@ -25,7 +25,6 @@ from ._core import (
     binding_energy_ev,
     catalogue,
     cross_section_barn,
-    imfp_nm,
     kinetic_energy_ev,
     material,
     photon_energy_ev,
@@ -33,6 +32,7 @@ from ._core import (
     thickness_from_areas,
     thickness_from_ratio,
 )
+from ._lengths import imfp_nm
 from ._thickness import thickness, thickness_nm
 
 __all__ = [

@@ -5,6 +5,7 @@ import json
 import numpy as np
 
 from . import _core
+from ._arrays import as_real, broadcast, scalar_or_array
 
 
 def thickness_nm(ratio, *, reference_ratio, film_line_length_nm, substrate_line_length_nm=None, emission_deg=0.0, status=False):
@@ -34,7 +35,7 @@ def thickness_nm(ratio, *, reference_ratio, film_line_length_nm, substrate_line_
 
     Raises
     ------
-    InputError, DomainError
+    InputError, DomainError, ConvergenceError
         Naming the first element that failed.
 
     References
@@ -47,17 +48,27 @@ def thickness_nm(ratio, *, reference_ratio, film_line_length_nm, substrate_line_
     >>> pellicle.thickness_nm([1.0, 2.0], reference_ratio=0.9329, film_line_length_nm=3.448).round(3)
     array([2.512, 3.95 ])
     """
-    inputs = [np.asarray(x, dtype=np.float64) for x in (ratio, reference_ratio, film_line_length_nm, emission_deg)]
+    arrays = {
+        "ratio": as_real("ratio", ratio),
+        "reference_ratio": as_real("reference_ratio", reference_ratio),
+        "film_line_length_nm": as_real("film_line_length_nm", film_line_length_nm),
+        "emission_deg": as_real("emission_deg", emission_deg),
+    }
     if substrate_line_length_nm is not None:
-        inputs.append(np.asarray(substrate_line_length_nm, dtype=np.float64))
-    shape = np.broadcast_shapes(*(x.shape for x in inputs))
+        arrays["substrate_line_length_nm"] = as_real("substrate_line_length_nm", substrate_line_length_nm)
+    shape = broadcast(**arrays)
     # One-element inputs stand for all elements in the core; only true arrays are spread out.
-    spread = [x if x.size == 1 else np.ascontiguousarray(np.broadcast_to(x, shape)) for x in inputs]
-    substrate = spread[4] if substrate_line_length_nm is not None else None
-    result = _core._thickness_arrays(spread[0], spread[1], spread[2], substrate, spread[3], shape, status)
-    if shape:
-        return result
-    return (float(result[0]), int(result[1])) if status else float(result)
+    spread = {n: a if a.size == 1 else np.ascontiguousarray(np.broadcast_to(a, shape)) for n, a in arrays.items()}
+    result = _core._thickness_arrays(
+        spread["ratio"],
+        spread["reference_ratio"],
+        spread["film_line_length_nm"],
+        spread.get("substrate_line_length_nm"),
+        spread["emission_deg"],
+        shape,
+        status,
+    )
+    return scalar_or_array(result, shape, status)
 
 
 def thickness(run):

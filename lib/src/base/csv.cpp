@@ -38,13 +38,15 @@ void on_row_end(int, void* buffer) { static_cast<RowBuffer*>(buffer)->complete =
 
 }  // namespace
 
-void read_csv(std::string_view text, const std::string& place, const std::function<void(const CsvRow&)>& on_row) {
+void read_csv(std::string_view text, const std::string& place, const std::function<void(const CsvRow&)>& on_row,
+              char separator) {
   struct ParserDeleter {
     void operator()(csv_parser* p) const { csv_free(p); }
   };
   csv_parser parser;
   if (csv_init(&parser, CSV_STRICT | CSV_STRICT_FINI) != 0) throw std::bad_alloc();
   const std::unique_ptr<csv_parser, ParserDeleter> cleanup(&parser);
+  csv_set_delim(&parser, static_cast<unsigned char>(separator));
 
   RowBuffer row;
   std::size_t line = 0;

@@ -17,7 +17,8 @@ struct CsvRow {
 
 /// Calls `on_row` for every row that is not blank. `place` names the text in errors.
 /// @throws InputError for a stray or unclosed quote.
-void read_csv(std::string_view text, const std::string& place, const std::function<void(const CsvRow&)>& on_row);
+void read_csv(std::string_view text, const std::string& place, const std::function<void(const CsvRow&)>& on_row,
+              char separator = ',');
 
 /// One row of a table with a header, fields by column name.
 class CsvRecord {

@@ -7,7 +7,10 @@ namespace {
 
 std::string join(const std::string& where, const std::string& fact, const std::string& hint) {
   std::string line = where.empty() ? fact : where + ": " + fact;
-  if (!hint.empty()) line += "; " + hint;
+  if (!hint.empty()) {
+    if (line.ends_with('.')) line.pop_back();
+    line += "; " + hint;
+  }
   // A value quoted from a broken file may hold line breaks; the message stays one line.
   for (char& c : line) {
     if (static_cast<unsigned char>(c) < 0x20) c = ' ';

@@ -28,6 +28,12 @@ std::size_t edit_distance(std::string_view a, std::string_view b) {
 
 std::string nearest_name(std::string_view word, std::span<const std::string> known) {
   if (word.size() > 64) return {};
+  // A longer or shorter form of a known name is meant before any name of like spelling.
+  constexpr std::size_t kFewest = 3;
+  for (const std::string& name : known) {
+    const std::size_t common = std::min(name.size(), word.size());
+    if (common >= kFewest && name.size() != word.size() && edit_distance(word.substr(0, common), std::string_view(name).substr(0, common)) == 0) return name;
+  }
   std::string best;
   std::size_t best_distance = std::max<std::size_t>(2, word.size() / 3) + 1;
   for (const std::string& name : known) {

@@ -1,5 +1,6 @@
-// Notation: t thickness [nm], R ratio, R0 reference ratio, Lf and Ls attenuation lengths in the film of
-// the film's and the substrate's line [nm], theta emission angle, x = t/(Lf cos theta), rho = Lf/Ls.
+// Notation: t thickness [nm], R ratio, R0 reference ratio, r product of all factors (R/R0 for the ratio method),
+// Lf and Ls attenuation lengths in the film of the film's and the substrate's line [nm], theta emission angle,
+// x = t/(Lf cos theta), rho = Lf/Ls.
 #include "pellicle/estimate/thickness.hpp"
 
 #include <algorithm>
@@ -7,11 +8,14 @@
 #include <limits>
 #include <string>
 
+#include <boost/math/tools/toms748_solve.hpp>
+
 #include "estimate/overlayer_root.hpp"
 #include "pellicle/base/constants.hpp"
 #include "pellicle/base/error.hpp"
 #include "pellicle/base/number.hpp"
 #include "pellicle/base/parallel.hpp"
+#include "pellicle/sample/acceptance.hpp"
 #include "pellicle/sample/emission.hpp"
 
 namespace pellicle {
@@ -20,105 +24,219 @@ namespace {
 /// Beyond this many lengths the substrate keeps less than 5 % of its signal.
 constexpr double kThickestReduced = 3.0;
 
-void check_quantity(const char* name, const Quantity& q, bool zero_allowed) {
+void check_quantity(const std::string& name, const Quantity& q, bool zero_allowed) {
   if (!std::isfinite(q.value) || !(zero_allowed ? q.value >= 0.0 : q.value > 0.0)) {
     throw InputError(name, number_text(q.value) + " is not a number " + (zero_allowed ? ">= 0" : "> 0"));
   }
   if (q.standard_uncertainty && (!std::isfinite(*q.standard_uncertainty) || !(*q.standard_uncertainty >= 0.0))) {
-    throw InputError(std::string(name) + "_sd", number_text(*q.standard_uncertainty) + " is not a standard uncertainty",
+    throw InputError(name + "_sd", number_text(*q.standard_uncertainty) + " is not a standard uncertainty",
                      "expected a number >= 0");
   }
 }
 
-void note_missing_uncertainty(const char* name, const Quantity& q, Findings& findings) {
+void note_missing_uncertainty(const std::string& name, const Quantity& q, Findings& findings) {
   if (q.standard_uncertainty) return;
   add_finding(findings, {"uncertainty_not_given", Severity::warning,
-                         std::string("no uncertainty is given for ") + name + "; it adds nothing to the budget", q.value});
+                         "no uncertainty is given for " + name + "; it adds nothing to the budget", q.value});
 }
 
-/// Thickness and its first derivatives at one point.
-struct Point {
-  double t, x;
-  double by_log_ratio;       // ∂t/∂ln R = −∂t/∂ln R0
-  double by_film_length;     // ∂t/∂Lf
-  double by_substrate_length;// ∂t/∂Ls; 0 when Ls is Lf
-  double by_emission_deg;    // ∂t/∂θ per degree
+double length_ratio(const FilmMeasurement& m) {
+  return m.substrate_line_length_nm ? m.film_line_length_nm.value / m.substrate_line_length_nm->value : 1.0;
+}
+
+const char* film_length_name(const FilmMeasurement& m) { return m.substrate_line_length_nm ? kFilmLengthName : kLengthName; }
+
+/// x and its derivatives: by ln r, and by ϱ at constant r.
+struct Reduced {
+  double x = 0.0;
+  double by_log_r = 0.0;
+  double by_rho = 0.0;
 };
 
-/// Implicit differentiation of g(x) = ln(1 − e^−x) + ϱx = ln(R/R0):
-///   dx = [d ln(R/R0) − x dϱ] / (ϱ + 1/(e^x − 1)),  t = x Lf cosθ,  ϱ = Lf/Ls.
-Point solve(double ratio, double reference_ratio, double film_length, std::optional<double> substrate_length,
-            double emission_deg) {
-  const double angle = emission_deg * kRadianPerDegree;
-  const double unit = film_length * std::cos(angle);
-  Point p{};
-  p.by_emission_deg = 0.0;
-  const double rho = substrate_length ? film_length / *substrate_length : 1.0;
-  if (ratio > 0.0) {
-    const detail::RootResult root = detail::overlayer_root(ratio / reference_ratio, rho);
-    if (root.status != Status::ok) throw ConvergenceError("thickness", "the solver did not reach its tolerance");
-    p.x = root.x;
+/// Implicit differentiation of g(x) = ln(1 − e^−x) + ϱx = ln r:  dx = [d ln r − x dϱ] / (ϱ + 1/(e^x − 1)).
+std::optional<Reduced> solve_reduced(ThicknessMethod method, double r, double rho) {
+  switch (method) {
+    case ThicknessMethod::ratio: {
+      if (!(r > 0.0)) return Reduced{};
+      const detail::RootResult root = detail::overlayer_root(r, rho);
+      if (root.status != Status::ok) return std::nullopt;
+      const double inverse_slope = root.x > 0.0 ? 1.0 / (rho + 1.0 / std::expm1(root.x)) : 0.0;
+      return Reduced{root.x, inverse_slope, -root.x * inverse_slope};
+    }
+    case ThicknessMethod::substrate_line:
+      if (!(r > 0.0) || r > 1.0) return std::nullopt;
+      return Reduced{-std::log(r), -1.0, 0.0};
+    case ThicknessMethod::film_line:
+    case ThicknessMethod::atomic_percent: break;
   }
-  p.t = p.x * unit;
-  // 1/(ϱ + 1/(e^x − 1)) written so that x = 0 gives 0 and a large x gives 1/ϱ.
-  const double inverse_slope = p.x > 0.0 ? 1.0 / (rho + 1.0 / std::expm1(p.x)) : 0.0;
-  p.by_log_ratio = unit * inverse_slope;
-  const double dx_drho = -p.x * inverse_slope;
-  if (substrate_length) {
-    p.by_film_length = std::cos(angle) * (p.x + film_length * dx_drho / *substrate_length);
-    p.by_substrate_length = -unit * dx_drho * film_length / (*substrate_length * *substrate_length);
+  if (!(r < 1.0)) return std::nullopt;
+  return Reduced{-std::log1p(-r), r / (1.0 - r), 0.0};
+}
+
+/// r of the cone for a thickness: intensities are averaged over the rays before a ratio is formed.
+double cone_signal(ThicknessMethod method, double thickness_nm, double film_length, double substrate_length,
+                   const std::vector<Ray>& rays) {
+  double film = 0.0, substrate = 0.0;
+  for (const Ray& ray : rays) {
+    film -= ray.weight * std::expm1(-thickness_nm / (film_length * ray.cos_emission));
+    substrate += ray.weight * std::exp(-thickness_nm / (substrate_length * ray.cos_emission));
+  }
+  if (method == ThicknessMethod::ratio) return film / substrate;
+  return method == ThicknessMethod::substrate_line ? substrate : film;
+}
+
+double product_of(const FilmMeasurement& m) {
+  double r = 1.0;
+  for (const SignalFactor& f : m.factors) r *= f.power == 1.0 ? f.quantity.value : f.power == -1.0 ? 1.0 / f.quantity.value : std::pow(f.quantity.value, f.power);
+  return r;
+}
+
+[[noreturn]] void throw_no_thickness(const FilmMeasurement& m, double r) {
+  const std::string value = rounded_text(r, 4);
+  switch (m.method) {
+    case ThicknessMethod::substrate_line:
+      if (r > 1.0) throw DomainError("substrate_area", "it is " + value + " times its reference area, as if the film were thinner than nothing", "only an upper bound of the thickness can be given");
+      throw DomainError("substrate_area", "the substrate's line is not there", "only a lower bound of the thickness can be given");
+    case ThicknessMethod::film_line:
+      throw DomainError("film_area", "it is " + value + " times the area of an infinitely thick film", "only a lower bound of the thickness can be given");
+    case ThicknessMethod::atomic_percent:
+      throw DomainError("atomic_percent", "an apparent fraction of " + value + " leaves no signal from below", "only a lower bound of the thickness can be given");
+    case ThicknessMethod::ratio: break;
+  }
+  throw ConvergenceError("thickness", "the solver did not reach its tolerance");
+}
+
+void check_correlation(double coefficient) {
+  if (!(std::abs(coefficient) <= 1.0)) throw InputError("length_correlation", number_text(coefficient) + " lies outside [-1, 1]");
+}
+
+void check_measurement(const FilmMeasurement& m) {
+  for (const SignalFactor& f : m.factors) check_quantity(f.name, f.quantity, f.is_area && f.power > 0.0);
+  check_quantity(film_length_name(m), m.film_line_length_nm, false);
+  if (m.substrate_line_length_nm) check_quantity(kSubstrateLengthName, *m.substrate_line_length_nm, false);
+  check_emission_deg(m.emission_deg.value);
+  check_quantity(kEmissionName, m.emission_deg, true);
+  const double r = product_of(m);
+  if (!std::isfinite(r)) throw InputError("areas", "their ratio is too large or too small for a number");
+}
+
+/// Result at the estimate with all sensitivities.
+struct Point {
+  double t = 0.0, x = 0.0;
+  std::vector<UncertainInput> inputs;
+};
+
+Point differentiate(const FilmMeasurement& m, const Reduced& reduced, double cone) {
+  const double angle = m.emission_deg.value * kRadianPerDegree;
+  const double unit = cone * m.film_line_length_nm.value * std::cos(angle);
+  Point p;
+  p.x = reduced.x;
+  p.t = reduced.x * unit;
+  for (const SignalFactor& f : m.factors) {
+    double sensitivity = 0.0;
+    if (f.quantity.value > 0.0) {
+      sensitivity = f.power * unit * reduced.by_log_r / f.quantity.value;
+    } else if (f.power == 1.0 && m.method != ThicknessMethod::substrate_line) {
+      // No film signal: x ≈ r, and r is proportional to this area.
+      double others = 1.0;
+      for (const SignalFactor& other : m.factors) {
+        if (&other != &f) others *= std::pow(other.quantity.value, other.power);
+      }
+      sensitivity = unit * others;
+    }
+    p.inputs.push_back({f.name, f.quantity.value, f.quantity.sd(), sensitivity, f.kind});
+  }
+  const Quantity& film = m.film_line_length_nm;
+  double by_film_length = cone * std::cos(angle) * reduced.x;
+  if (m.substrate_line_length_nm) {
+    const Quantity& substrate = *m.substrate_line_length_nm;
+    by_film_length += unit * reduced.by_rho / substrate.value;
+    const double by_substrate = -unit * reduced.by_rho * film.value / (substrate.value * substrate.value);
+    p.inputs.push_back({kFilmLengthName, film.value, film.sd(), by_film_length, ContributionKind::scale});
+    p.inputs.push_back({kSubstrateLengthName, substrate.value, substrate.sd(), by_substrate, ContributionKind::scale});
   } else {
-    p.by_film_length = p.x * std::cos(angle);
+    p.inputs.push_back({kLengthName, film.value, film.sd(), by_film_length, ContributionKind::scale});
   }
-  p.by_emission_deg = -p.t * std::tan(angle) * kRadianPerDegree;
+  // A stage offset is the same for every spot of a mount, so the angle counts as common, not as repeatability.
+  p.inputs.push_back({kEmissionName, m.emission_deg.value, m.emission_deg.sd(), -p.t * std::tan(angle) * kRadianPerDegree,
+                      ContributionKind::scale});
   return p;
 }
 
-/// What both kinds of measurement share: lengths and angle.
-struct Common {
-  const Quantity& film_line_length_nm;
-  const std::optional<Quantity>& substrate_line_length_nm;
-  const Quantity& emission_deg;
-  double length_correlation;
-};
-
-/// ∂t/∂v of a quantity v of which R/R0 is proportional to v^power. At v = 0 (no film signal) t ≈ Lf cosθ R/R0.
-double by_factor(const Point& p, double value, double power, double unit_at_zero) {
-  return value > 0.0 ? power * p.by_log_ratio / value : unit_at_zero;
+std::vector<Correlation> positions(const FilmMeasurement& m, const std::vector<UncertainInput>& inputs) {
+  std::vector<Correlation> all;
+  const auto position = [&](const std::string& name) {
+    const auto found = std::find_if(inputs.begin(), inputs.end(), [&](const UncertainInput& i) { return i.name == name; });
+    if (found == inputs.end()) throw InputError("correlation", "no input is called \"" + name + "\"");
+    return static_cast<std::size_t>(found - inputs.begin());
+  };
+  for (const NamedCorrelation& c : m.correlations) all.push_back({position(c.first), position(c.second), c.coefficient});
+  return all;
 }
 
-Thickness assemble(const Point& p, std::vector<UncertainInput> inputs, const Common& common, Findings findings) {
-  std::vector<Correlation> correlations;
-  const Quantity& film = common.film_line_length_nm;
-  const char* film_name = common.substrate_line_length_nm ? "film_line_length_nm" : "length_nm";
-  inputs.push_back({film_name, film.value, film.sd(), p.by_film_length, ContributionKind::scale});
-  note_missing_uncertainty(film_name, film, findings);
-  bool scale_stated = film.standard_uncertainty.has_value();
-  if (common.substrate_line_length_nm) {
-    const Quantity& substrate = *common.substrate_line_length_nm;
-    inputs.push_back({"substrate_line_length_nm", substrate.value, substrate.sd(), p.by_substrate_length, ContributionKind::scale});
-    note_missing_uncertainty("substrate_line_length_nm", substrate, findings);
-    scale_stated = scale_stated && substrate.standard_uncertainty;
-    if (common.length_correlation != 0.0) {
-      correlations.push_back({inputs.size() - 2, inputs.size() - 1, common.length_correlation});
-    }
-  }
-  const Quantity& angle = common.emission_deg;
-  // A stage offset is the same for every spot of a mount, so the angle counts as common, not as repeatability.
-  inputs.push_back({"emission_deg", angle.value, angle.sd(), p.by_emission_deg, ContributionKind::scale});
-  note_missing_uncertainty("emission_deg", angle, findings);
-
-  Thickness result;
-  result.value_nm = p.t;
-  result.reduced_thickness = p.x;
-  result.budget = combine(inputs, correlations);
-  result.standard_uncertainty_nm = result.budget.standard_uncertainty;
-  result.scale_stated = scale_stated;
-  result.interval_nm = normal_interval(p.t, result.standard_uncertainty_nm);
+void note_inputs(const FilmMeasurement& m, bool scale_stated, Findings& findings) {
+  for (const SignalFactor& f : m.factors) note_missing_uncertainty(f.name, f.quantity, findings);
+  note_missing_uncertainty(film_length_name(m), m.film_line_length_nm, findings);
+  if (m.substrate_line_length_nm) note_missing_uncertainty(kSubstrateLengthName, *m.substrate_line_length_nm, findings);
+  note_missing_uncertainty(kEmissionName, m.emission_deg, findings);
   if (!scale_stated) {
     add_finding(findings, {"scale_not_stated", Severity::warning,
                            "thickness scale: not stated, because the attenuation length has no uncertainty"});
   }
+}
+
+}  // namespace
+
+const char* method_name(ThicknessMethod method) noexcept {
+  switch (method) {
+    case ThicknessMethod::ratio: return "ratio";
+    case ThicknessMethod::substrate_line: return "substrate-line";
+    case ThicknessMethod::film_line: return "film-line";
+    case ThicknessMethod::atomic_percent: break;
+  }
+  return "atomic-percent";
+}
+
+double cone_factor(const FilmMeasurement& m) {
+  check_measurement(m);
+  if (m.acceptance_half_angle_deg == 0.0) return 1.0;
+  const std::vector<Ray> rays = acceptance_rays(m.emission_deg.value, m.acceptance_half_angle_deg);
+  const double r = product_of(m);
+  const std::optional<Reduced> axis = solve_reduced(m.method, r, length_ratio(m));
+  if (!axis) throw_no_thickness(m, r);
+  if (!(axis->x > 0.0)) return 1.0;
+  const double film_length = m.film_line_length_nm.value;
+  const double substrate_length = m.substrate_line_length_nm ? m.substrate_line_length_nm->value : film_length;
+  const double t = axis->x * film_length * std::cos(m.emission_deg.value * kRadianPerDegree);
+  const auto misfit = [&](double factor) { return std::log(cone_signal(m.method, t * factor, film_length, substrate_length, rays) / r); };
+  double low = 0.5, high = 2.0;
+  while (misfit(low) * misfit(high) > 0.0 && high < 1e3) {
+    low *= 0.5;
+    high *= 2.0;
+  }
+  if (!(misfit(low) * misfit(high) <= 0.0)) throw ConvergenceError("acceptance_half_angle_deg", "no thickness fits the cone");
+  std::uintmax_t steps = 100;
+  const auto [a, b] = boost::math::tools::toms748_solve(misfit, low, high, boost::math::tools::eps_tolerance<double>(50), steps);
+  return 0.5 * (a + b);
+}
+
+Thickness thickness_from_factors(const FilmMeasurement& m) {
+  check_measurement(m);
+  const double r = product_of(m);
+  const std::optional<Reduced> reduced = solve_reduced(m.method, r, length_ratio(m));
+  if (!reduced) throw_no_thickness(m, r);
+  const Point p = differentiate(m, *reduced, m.acceptance_half_angle_deg == 0.0 ? 1.0 : cone_factor(m));
+
+  Thickness result;
+  result.value_nm = p.t;
+  result.reduced_thickness = p.x;
+  result.budget = combine(p.inputs, positions(m, p.inputs));
+  result.standard_uncertainty_nm = result.budget.standard_uncertainty;
+  result.scale_stated = m.film_line_length_nm.standard_uncertainty &&
+                        (!m.substrate_line_length_nm || m.substrate_line_length_nm->standard_uncertainty);
+  result.interval_nm = normal_interval(p.t, result.standard_uncertainty_nm);
+  Findings findings = emission_findings(m.emission_deg.value, m.length_given_for_angle);
+  note_inputs(m, result.scale_stated, findings);
   if (result.interval_nm.low95 < 0.0) {
     add_finding(findings, {"interval_reaches_zero", Severity::warning,
                            "the 95 % interval reaches zero thickness; its lower end is set to 0 nm",
@@ -135,54 +253,43 @@ Thickness assemble(const Point& p, std::vector<UncertainInput> inputs, const Com
   return result;
 }
 
-void check_common(const Common& common) {
-  check_quantity("film_line_length_nm", common.film_line_length_nm, false);
-  if (common.substrate_line_length_nm) check_quantity("substrate_line_length_nm", *common.substrate_line_length_nm, false);
-  check_emission_deg(common.emission_deg.value);
-  check_quantity("emission_deg", common.emission_deg, true);
+std::optional<double> thickness_of_draw(const FilmMeasurement& m, std::span<const double> inputs, double cone) noexcept {
+  double r = 1.0;
+  std::size_t i = 0;
+  for (const SignalFactor& f : m.factors) {
+    const double value = inputs[i++];
+    r *= f.power == 1.0 ? value : f.power == -1.0 ? 1.0 / value : std::pow(value, f.power);
+  }
+  const double film_length = inputs[i++];
+  const double rho = m.substrate_line_length_nm ? film_length / inputs[i++] : 1.0;
+  const double cosine = std::cos(inputs[i] * kRadianPerDegree);
+  if (!std::isfinite(r) || !(film_length > 0.0) || !(rho > 0.0) || !(cosine > 0.0)) return std::nullopt;
+  const std::optional<Reduced> reduced = solve_reduced(m.method, r, rho);
+  if (!reduced) return std::nullopt;
+  return cone * reduced->x * film_length * cosine;
 }
-
-Point solve(double ratio, double reference_ratio, const Common& common) {
-  return solve(ratio, reference_ratio, common.film_line_length_nm.value,
-               common.substrate_line_length_nm ? std::optional<double>(common.substrate_line_length_nm->value) : std::nullopt,
-               common.emission_deg.value);
-}
-
-double slope_at_zero(const Common& common) {
-  return common.film_line_length_nm.value * std::cos(common.emission_deg.value * kRadianPerDegree);
-}
-
-}  // namespace
 
 Thickness thickness_from_ratio(const RatioMeasurement& m) {
-  const Common common{m.film_line_length_nm, m.substrate_line_length_nm, m.emission_deg, m.length_correlation};
   if (m.ratio.value == std::numeric_limits<double>::infinity()) {
     throw DomainError("ratio", "the substrate's line is not there", "only a lower bound of the thickness can be given");
   }
-  check_quantity("ratio", m.ratio, true);
-  check_quantity("reference_ratio", m.reference_ratio, false);
-  check_common(common);
-  const Point p = solve(m.ratio.value, m.reference_ratio.value, common);
-  Findings findings = emission_findings(m.emission_deg.value);
-  note_missing_uncertainty("ratio", m.ratio, findings);
-  note_missing_uncertainty("reference_ratio", m.reference_ratio, findings);
-  return assemble(p,
-                  {{"ratio", m.ratio.value, m.ratio.sd(),
-                    by_factor(p, m.ratio.value, 1.0, slope_at_zero(common) / m.reference_ratio.value),
-                    ContributionKind::repeatability},
-                   {"reference_ratio", m.reference_ratio.value, m.reference_ratio.sd(),
-                    by_factor(p, m.reference_ratio.value, -1.0, 0.0), ContributionKind::scale}},
-                  common, std::move(findings));
+  check_correlation(m.length_correlation);
+  FilmMeasurement general;
+  general.factors = {{"ratio", m.ratio, 1.0, ContributionKind::repeatability, true},
+                     {"reference_ratio", m.reference_ratio, -1.0, ContributionKind::scale}};
+  general.film_line_length_nm = m.film_line_length_nm;
+  general.substrate_line_length_nm = m.substrate_line_length_nm;
+  general.emission_deg = m.emission_deg;
+  if (m.substrate_line_length_nm && m.length_correlation != 0.0) {
+    general.correlations = {{kFilmLengthName, kSubstrateLengthName, m.length_correlation}};
+  }
+  return thickness_from_factors(general);
 }
 
 Thickness thickness_from_areas(const AreaMeasurement& m) {
-  const Common common{m.film_line_length_nm, m.substrate_line_length_nm, m.emission_deg, m.length_correlation};
-  check_quantity("film_area", m.film_area, true);
   if (m.substrate_area.value == 0.0) {
     throw DomainError("substrate_area", "the substrate's line is not there", "only a lower bound of the thickness can be given");
   }
-  check_quantity("substrate_area", m.substrate_area, false);
-  check_common(common);
   const bool by_areas = m.reference_film_area || m.reference_substrate_area;
   if (by_areas == m.reference_ratio.has_value()) {
     throw InputError("reference", by_areas ? "both a reference ratio and reference areas are given" : "no reference ratio is given",
@@ -192,37 +299,23 @@ Thickness thickness_from_areas(const AreaMeasurement& m) {
     throw InputError("reference", "one of the two reference areas is missing",
                      "give both reference_film_area and reference_substrate_area");
   }
-  double reference_ratio = 0.0;
+  check_correlation(m.length_correlation);
+  FilmMeasurement general;
+  general.factors = {{"film_area", m.film_area, 1.0, ContributionKind::repeatability, true},
+                     {"substrate_area", m.substrate_area, -1.0, ContributionKind::repeatability, true}};
   if (by_areas) {
-    check_quantity("reference_film_area", *m.reference_film_area, false);
-    check_quantity("reference_substrate_area", *m.reference_substrate_area, false);
-    reference_ratio = m.reference_film_area->value / m.reference_substrate_area->value;
+    general.factors.push_back({"reference_film_area", *m.reference_film_area, -1.0, ContributionKind::scale, true});
+    general.factors.push_back({"reference_substrate_area", *m.reference_substrate_area, 1.0, ContributionKind::scale, true});
   } else {
-    check_quantity("reference_ratio", *m.reference_ratio, false);
-    reference_ratio = m.reference_ratio->value;
+    general.factors.push_back({"reference_ratio", *m.reference_ratio, -1.0, ContributionKind::scale});
   }
-  const double ratio = m.film_area.value / m.substrate_area.value;
-  if (!std::isfinite(ratio) || !(reference_ratio > 0.0) || !std::isfinite(reference_ratio) ||
-      !std::isfinite(ratio / reference_ratio)) {
-    throw InputError("areas", "their ratio is too large or too small for a number");
+  general.film_line_length_nm = m.film_line_length_nm;
+  general.substrate_line_length_nm = m.substrate_line_length_nm;
+  general.emission_deg = m.emission_deg;
+  if (m.substrate_line_length_nm && m.length_correlation != 0.0) {
+    general.correlations = {{kFilmLengthName, kSubstrateLengthName, m.length_correlation}};
   }
-  const Point p = solve(ratio, reference_ratio, common);
-
-  Findings findings = emission_findings(m.emission_deg.value);
-  std::vector<UncertainInput> inputs;
-  const auto add = [&](const char* name, const Quantity& q, double power, double at_zero, ContributionKind kind) {
-    note_missing_uncertainty(name, q, findings);
-    inputs.push_back({name, q.value, q.sd(), by_factor(p, q.value, power, at_zero), kind});
-  };
-  add("film_area", m.film_area, 1.0, slope_at_zero(common) / (m.substrate_area.value * reference_ratio), ContributionKind::repeatability);
-  add("substrate_area", m.substrate_area, -1.0, 0.0, ContributionKind::repeatability);
-  if (by_areas) {
-    add("reference_film_area", *m.reference_film_area, -1.0, 0.0, ContributionKind::scale);
-    add("reference_substrate_area", *m.reference_substrate_area, 1.0, 0.0, ContributionKind::scale);
-  } else {
-    add("reference_ratio", *m.reference_ratio, -1.0, 0.0, ContributionKind::scale);
-  }
-  return assemble(p, std::move(inputs), common, std::move(findings));
+  return thickness_from_factors(general);
 }
 
 void thickness_nm(const RatioArrays& in, std::span<double> out, std::span<Status> status) {

@@ -41,9 +41,14 @@ Json material_json(const Material& m) {
 Json line_json(const Line& line) {
   Json lengths = Json::object();
   for (const auto& [layer, length] : line.length_nm) lengths[layer] = quantity_json(length);
-  return {{"label", line.label}, {"level", line.level ? Json(line.level->name) : Json(nullptr)},
+  Json components = Json::array();
+  for (const Component& part : line.components) components.push_back({{"label", part.label}, {"weight", part.weight}});
+  const auto maybe = [](const std::optional<Quantity>& q) { return q ? quantity_json(*q) : Json(nullptr); };
+  return {{"label", line.label}, {"components", components}, {"level", line.level ? Json(line.level->name) : Json(nullptr)},
           {"kinetic_energy_ev", line.kinetic_energy_ev}, {"from", line.from}, {"length_nm", lengths},
-          {"reference_area", line.reference_area ? quantity_json(*line.reference_area) : Json(nullptr)}};
+          {"main_peak_fraction", maybe(line.main_peak_fraction)}, {"reference_area", maybe(line.reference_area)},
+          {"reference_emission_deg", or_null(line.reference_emission_deg)}, {"sensitivity", maybe(line.sensitivity)},
+          {"transmission", maybe(line.transmission)}};
 }
 
 Json run_json(const Run& run) {
@@ -55,41 +60,68 @@ Json run_json(const Run& run) {
     }
   }
   Json layers = Json::array();
-  for (const Layer& layer : run.sample.layers) layers.push_back({{"name", layer.name}, {"material", material_json(layer.material)}});
+  for (const Layer& layer : run.sample.layers) {
+    layers.push_back({{"name", layer.name}, {"material", material_json(layer.material)},
+                      {"thickness_nm", layer.thickness_nm ? quantity_json(*layer.thickness_nm) : Json(nullptr)}});
+  }
   Json lines = Json::array();
   for (const Line& line : run.lines) lines.push_back(line_json(line));
   Json references = Json::array();
   for (const ReferenceRatio& r : run.references) {
-    references.push_back({{"film", r.film}, {"substrate", r.substrate}, {"ratio", quantity_json(r.ratio)}});
+    const Json ratio = r.origin == ReferenceOrigin::given      ? quantity_json(r.ratio)
+                       : r.origin == ReferenceOrigin::computed ? Json("computed")
+                                                               : Json("table:" + r.table_key);
+    references.push_back({{"film", r.film}, {"substrate", r.substrate}, {"ratio", ratio}});
   }
   Json areas = Json::array();
   for (const AreaRow& row : run.areas) {
-    areas.push_back({{"spot", row.spot}, {"emission_deg", or_null(row.emission_deg)}, {"line", row.line}, {"area", row.area},
-                     {"area_sd", or_null(row.area_sd)}, {"background_counts", or_null(row.counting.background_counts)},
-                     {"dwell_s", or_null(row.counting.dwell_s)}, {"step_ev", or_null(row.counting.step_ev)}});
+    Json area = {{"spot", row.spot}, {"emission_deg", or_null(row.emission_deg)}, {"line", row.line}, {"area", or_null(row.area)},
+                 {"area_sd", or_null(row.area_sd)}, {"background_counts", or_null(row.counting.background_counts)},
+                 {"dwell_s", or_null(row.counting.dwell_s)}, {"step_ev", or_null(row.counting.step_ev)}};
+    if (run.tables.size() > 1) area["table"] = run.tables[row.table];
+    areas.push_back(std::move(area));
   }
+  Json correlations = Json::array();
+  for (const AreaCorrelation& c : run.area_correlations) correlations.push_back({{"lines", {c.first, c.second}}, {"r", c.coefficient}});
+  Json includes = Json::array();
+  if (run.sensitivity_includes_transmission) includes.push_back("transmission");
+  if (run.sensitivity_includes_escape_depth) includes.push_back("escape-depth");
+  const Geometry& g = run.geometry;
   return {{"title", run.title},
           {"record", record},
           {"source", run.source.name},
           {"photon_energy_ev", run.source.photon_energy_ev},
+          {"source_analyser_angle_deg", or_null(g.source_analyser_angle_deg)},
+          {"acceptance_half_angle_deg", g.acceptance_half_angle_deg},
+          {"signal_area", signal_area_name(g.signal_area)},
+          {"tilt_direction", g.tilt_direction ? Json(tilt_direction_name(*g.tilt_direction)) : Json(nullptr)},
+          {"emission_at_zero_tilt_deg", g.emission_at_zero_tilt_deg},
           {"emission_deg", or_null(run.emission_deg)},
           {"emission_sd_deg", or_null(run.emission_sd_deg)},
           {"substrate", material_json(run.sample.substrate)},
           {"layers", layers},
           {"length_set", run.length_set.empty() ? Json(nullptr) : Json(run.length_set)},
+          {"method", method_name(run.method)},
           {"lines", lines},
+          {"sensitivity_kind", sensitivity_kind_name(run.sensitivity_kind)},
+          {"sensitivity_includes", includes},
           {"references", references},
+          {"contamination", run.contamination ? Json({{"layer", run.contamination->layer}, {"line", run.contamination->line},
+                                                      {"route", contamination_route_name(run.contamination->route)}})
+                                              : Json(nullptr)},
           {"area_unit", area_unit_name(run.area_unit)},
+          {"transmission", run.transmission_corrected ? "corrected" : "raw"},
+          {"correlation", correlations},
           {"areas", areas}};
 }
 
 /// The frame that every result shares.
-std::string document(const char* command, const Json& inputs, Json results, Json summary) {
+std::string document(const char* command, const Json& inputs, Json results, Json summary, std::optional<std::uint64_t> seed = {}) {
   Json doc = {{"schema", "pellicle.result/1"},
               {"version", version()},
               {"command", command},
               {"inputs_sha256", detail::sha256_hex(inputs.dump())},
-              {"seed", nullptr},
+              {"seed", or_null(seed)},
               {"inputs", inputs},
               {"results", std::move(results)},
               {"summary", std::move(summary)}};
@@ -110,56 +142,101 @@ Json budget_json(const Budget& budget) {
   return rows;
 }
 
-Json thickness_result_json(const ThicknessResult& r, const ThicknessPair& pair) {
+Json label_or_null(const Run& run, const std::optional<std::size_t>& line) {
+  return line ? Json(run.lines[*line].label) : Json(nullptr);
+}
+
+Json quantity_or_null(const std::optional<Quantity>& q) { return q ? quantity_json(*q) : Json(nullptr); }
+
+Json reference_json(const ThicknessRoute& route) {
+  Json reference = route.reference_ratio ? quantity_json(*route.reference_ratio) : Json{{"value", nullptr}, {"sd", nullptr}};
+  reference["origin"] = route.reference_origin;
+  if (!route.reference_applied.empty()) reference["applied"] = route.reference_applied;
+  return reference;
+}
+
+Json interval_json(const Interval& i, double sd) { return {{"sd", sd}, {"low95", i.low95}, {"high95", i.high95}}; }
+
+Json thickness_value_json(const ThicknessResult& r) {
+  if (r.bound) return {{"bound", r.bound->upper ? "upper" : "lower"}, {"at95", r.bound->at95_nm}};
+  if (!r.thickness) return nullptr;
+  const Interval i = r.interval_nm();
+  return {{"value", r.thickness->value_nm}, {"sd", r.standard_uncertainty_nm()}, {"low95", i.low95}, {"high95", i.high95},
+          {"interval_from", r.monte_carlo ? "monte-carlo" : "gum"}};
+}
+
+Json thickness_result_json(const Run& run, const ThicknessResults& all, const ThicknessResult& r) {
+  const ThicknessRoute& route = all.routes[r.route];
   Json result = {{"spot", r.spot},
                  {"emission_deg", r.emission_deg},
                  {"takeoff_deg", 90.0 - r.emission_deg},
-                 {"layer", pair.layer},
-                 {"film_line", pair.film_line},
-                 {"substrate_line", pair.substrate_line},
-                 {"thickness_nm", nullptr},
+                 {"layer", route.layer},
+                 {"method", method_name(route.method)},
+                 {"film_line", label_or_null(run, route.film_line)},
+                 {"substrate_line", label_or_null(run, route.substrate_line)},
+                 {"thickness_nm", thickness_value_json(r)},
+                 {"gum_nm", nullptr},
+                 {"monte_carlo_nm", nullptr},
                  {"repeatability_nm", nullptr},
                  {"scale_nm", nullptr},
-                 {"film_area", quantity_json(r.film_area)},
-                 {"substrate_area", quantity_json(r.substrate_area)},
-                 {"reference_ratio", quantity_json(pair.reference_ratio)},
-                 {"length_nm", length_used_json(pair.film_length)},
-                 {"substrate_line_length_nm", pair.substrate_length ? length_used_json(*pair.substrate_length) : Json(nullptr)},
+                 {"areal_density_ug_cm2", quantity_or_null(r.areal_density_ug_cm2)},
+                 {"emitting_atoms_per_nm2", quantity_or_null(r.emitting_atoms_per_nm2)},
+                 {"film_area", quantity_or_null(r.film_area)},
+                 {"substrate_area", quantity_or_null(r.substrate_area)},
+                 {"reference_ratio", reference_json(route)},
+                 {"length_nm", length_used_json(route.film_length)},
+                 {"substrate_line_length_nm", route.substrate_length ? length_used_json(*route.substrate_length) : Json(nullptr)},
                  {"budget", Json::array()},
-                 {"findings", findings_json(pair.findings)},
-                 {"failure", nullptr}};
-  result["reference_ratio"]["origin"] = pair.reference_origin;
-  if (!r.thickness) {
-    if (r.film_area.value == 0.0 && r.substrate_area.value == 0.0) result["film_area"] = result["substrate_area"] = nullptr;
-    result["failure"] = r.failure;
-    return result;
-  }
+                 {"findings", findings_json(all.findings_of(r))},
+                 {"failure", r.failure.empty() ? Json(nullptr) : Json(r.failure)}};
+  if (run.tables.size() > 1) result["table"] = run.tables[r.table];
+  if (route.contamination) result["contamination_route"] = contamination_route_name(*route.contamination);
+  if (!r.thickness) return result;
   const Thickness& t = *r.thickness;
-  result["thickness_nm"] = {{"value", t.value_nm}, {"sd", t.standard_uncertainty_nm}, {"low95", t.interval_nm.low95},
-                            {"high95", t.interval_nm.high95}, {"interval_from", "gum"}};
+  result["gum_nm"] = interval_json(t.interval_nm, t.standard_uncertainty_nm);
+  if (r.monte_carlo) {
+    const MonteCarloThickness& mc = *r.monte_carlo;
+    result["monte_carlo_nm"] = interval_json(mc.interval_nm, mc.standard_uncertainty_nm);
+    result["monte_carlo_nm"]["mean"] = mc.mean_nm;
+    result["monte_carlo_nm"]["draws"] = mc.draws;
+    result["monte_carlo_nm"]["rejected"] = mc.rejected;
+    result["monte_carlo_nm"]["gum_agrees"] = mc.gum_agrees;
+  }
   result["repeatability_nm"] = t.budget.repeatability;
   result["scale_nm"] = t.scale_stated ? Json(t.budget.scale) : Json(nullptr);
   result["budget"] = budget_json(t.budget);
-  result["findings"] = findings_json(t.findings);
   return result;
 }
 
-Json summary_json(const ThicknessSummary& s, const ThicknessPair& pair) {
+Json summary_json(const Run& run, const ThicknessResults& all, const ThicknessSummary& s) {
+  const ThicknessRoute& route = all.routes[s.route];
   const bool any = s.count > 0;
-  return {{"film_line", pair.film_line},
-          {"substrate_line", pair.substrate_line},
+  Json outliers = Json::array();
+  for (const std::size_t i : s.outliers) outliers.push_back({{"spot", all.results[i].spot}, {"emission_deg", all.results[i].emission_deg}});
+  return {{"layer", route.layer},
+          {"method", method_name(route.method)},
+          {"film_line", label_or_null(run, route.film_line)},
+          {"substrate_line", label_or_null(run, route.substrate_line)},
           {"count", s.count},
+          {"bounds", s.bounds},
           {"failed", s.failed},
           {"mean_nm", any ? Json(s.mean_nm) : Json(nullptr)},
           {"standard_deviation_nm", or_null(s.standard_deviation_nm)},
           {"repeatability_of_mean_nm", any ? Json(s.repeatability_of_mean_nm) : Json(nullptr)},
-          {"scale_nm", any && s.scale_stated ? Json(s.scale_nm) : Json(nullptr)}};
+          {"scale_nm", any && s.scale_stated ? Json(s.scale_nm) : Json(nullptr)},
+          {"outliers", outliers}};
 }
 
-Json summaries_json(const ThicknessResults& results) {
+Json summaries_json(const Run& run, const ThicknessResults& results) {
   Json all = Json::array();
-  for (const ThicknessSummary& s : results.summaries) all.push_back(summary_json(s, results.pairs[s.pair]));
+  for (const ThicknessSummary& s : results.summaries) all.push_back(summary_json(run, results, s));
   return all;
+}
+
+Json chosen_length_json(const AttenuationLength& length) {
+  if (length.model.empty()) return nullptr;
+  return {{"value", length.value_nm}, {"sd", length.standard_uncertainty_nm}, {"model", length.model},
+          {"imfp_model", length.imfp_model.empty() ? Json(nullptr) : Json(length.imfp_model)}};
 }
 
 Json model_values(const std::vector<ModelValue>& models) {
@@ -198,9 +275,7 @@ std::string lengths_json(const std::vector<LengthQuery>& queries) {
                        {"band_gap_ev", or_null(q.material.band_gap_ev)},
                        {"energy_ev", q.energy_ev},
                        {"imfp_nm", model_values(q.length.imfp)},
-                       {"attenuation_length_nm", {{"value", q.length.value_nm}, {"sd", q.length.standard_uncertainty_nm},
-                                                  {"model", q.length.model},
-                                                  {"imfp_model", q.length.imfp_model.empty() ? Json(nullptr) : Json(q.length.imfp_model)}}},
+                       {"attenuation_length_nm", chosen_length_json(q.length)},
                        {"attenuation_models_nm", model_values(q.length.models)},
                        {"refusals", refusals},
                        {"findings", findings_json(q.length.findings)}});
@@ -210,8 +285,12 @@ std::string lengths_json(const std::vector<LengthQuery>& queries) {
 
 std::string thickness_json(const Run& run, const ThicknessResults& results) {
   Json rows = Json::array();
-  for (const ThicknessResult& r : results.results) rows.push_back(thickness_result_json(r, results.pairs[r.pair]));
-  return document("thickness", run_json(run), rows, summaries_json(results));
+  bool drawn = false;
+  for (const ThicknessResult& r : results.results) {
+    rows.push_back(thickness_result_json(run, results, r));
+    drawn = drawn || r.monte_carlo;
+  }
+  return document("thickness", run_json(run), rows, summaries_json(run, results), drawn ? std::optional(run.uncertainty.seed) : std::nullopt);
 }
 
 std::string materials_json(const std::vector<Material>& materials) {
@@ -260,43 +339,47 @@ std::string photon_sources_json() {
 }
 
 std::string check_json(const Run& run, const ThicknessResults& results) {
-  Findings findings;
   Json failures = Json::array();
   for (const ThicknessResult& r : results.results) {
-    if (r.thickness) {
-      add_findings(findings, r.thickness->findings);
-    } else {
-      failures.push_back({{"spot", r.spot}, {"emission_deg", r.emission_deg}, {"failure", r.failure}});
-    }
+    if (!r.failure.empty()) failures.push_back({{"spot", r.spot}, {"emission_deg", r.emission_deg}, {"failure", r.failure}});
   }
-  Json pairs = Json::array();
-  for (const ThicknessPair& pair : results.pairs) {
-    pairs.push_back({{"layer", pair.layer}, {"film_line", pair.film_line}, {"substrate_line", pair.substrate_line},
-                     {"reference_ratio", quantity_json(pair.reference_ratio)}, {"length_nm", length_used_json(pair.film_length)}});
+  Json routes = Json::array();
+  for (const ThicknessRoute& route : results.routes) {
+    routes.push_back({{"layer", route.layer}, {"method", method_name(route.method)}, {"film_line", label_or_null(run, route.film_line)},
+                      {"substrate_line", label_or_null(run, route.substrate_line)}, {"reference_ratio", reference_json(route)},
+                      {"length_nm", length_used_json(route.film_length)}});
   }
-  const Json row = {{"ok", failures.empty()}, {"pairs", pairs}, {"areas", run.areas.size()}, {"results", results.results.size()},
-                    {"failures", failures}, {"findings", findings_json(findings)}};
+  const Json row = {{"ok", failures.empty()}, {"routes", routes}, {"areas", run.areas.size()}, {"results", results.results.size()},
+                    {"failures", failures}, {"findings", findings_json(results.findings)}};
   return document("check", run_json(run), Json::array({row}), nullptr);
 }
 
-std::string thickness_csv(const ThicknessResults& results) {
-  std::string csv = "spot,emission_deg,layer,film_line,substrate_line,thickness_nm,sd_nm,low95_nm,high95_nm,"
-                    "repeatability_nm,scale_nm,findings,failure\n";
+std::string thickness_csv(const Run& run, const ThicknessResults& results) {
+  const bool tables = run.tables.size() > 1;
+  fmt::memory_buffer csv;
+  const auto out = std::back_inserter(csv);
+  fmt::format_to(out, "{}spot,emission_deg,layer,method,film_line,substrate_line,thickness_nm,sd_nm,low95_nm,high95_nm,bound,"
+                      "repeatability_nm,scale_nm,areal_density_ug_cm2,findings,failure\n", tables ? "table," : "");
+  const auto label = [&](const std::optional<std::size_t>& line) { return line ? csv_cell(run.lines[*line].label) : std::string(); };
   for (const ThicknessResult& r : results.results) {
-    const ThicknessPair& pair = results.pairs[r.pair];
-    csv += fmt::format("{},{},{},{},{},", csv_cell(r.spot), r.emission_deg, csv_cell(pair.layer), csv_cell(pair.film_line),
-                       csv_cell(pair.substrate_line));
-    if (!r.thickness) {
-      csv += fmt::format(",,,,,,,{}\n", csv_cell(r.failure));
-      continue;
+    const ThicknessRoute& route = results.routes[r.route];
+    if (tables) fmt::format_to(out, "{},", csv_cell(run.tables[r.table]));
+    fmt::format_to(out, "{},{},{},{},{},{},", csv_cell(r.spot), r.emission_deg, csv_cell(route.layer), method_name(route.method),
+                   label(route.film_line), label(route.substrate_line));
+    if (r.thickness) {
+      const Thickness& t = *r.thickness;
+      const Interval i = r.interval_nm();
+      fmt::format_to(out, "{},{},{},{},,{},{},{},", t.value_nm, r.standard_uncertainty_nm(), i.low95, i.high95, t.budget.repeatability,
+                     t.scale_stated ? number_text(t.budget.scale) : std::string(), r.areal_density_ug_cm2->value);
+    } else if (r.bound) {
+      fmt::format_to(out, "{},,,,{},,,,", r.bound->at95_nm, r.bound->upper ? "upper95" : "lower95");
+    } else {
+      fmt::format_to(out, ",,,,,,,,");
     }
-    const Thickness& t = *r.thickness;
-    std::string codes;
-    for (const Finding& f : t.findings) codes += (codes.empty() ? "" : " ") + f.code;
-    csv += fmt::format("{},{},{},{},{},{},{},\n", t.value_nm, t.standard_uncertainty_nm, t.interval_nm.low95, t.interval_nm.high95,
-                       t.budget.repeatability, t.scale_stated ? number_text(t.budget.scale) : std::string(), codes);
+    for (std::size_t k = 0; k < r.findings.size(); ++k) fmt::format_to(out, "{}{}", k == 0 ? "" : " ", results.findings[r.findings[k]].code);
+    fmt::format_to(out, ",{}\n", csv_cell(r.failure));
   }
-  return csv;
+  return fmt::to_string(csv);
 }
 
 }  // namespace pellicle

@@ -109,6 +109,13 @@ std::optional<double> TomlSection::number(std::string_view key) {
   return finite_number(*node, where(key));
 }
 
+std::optional<bool> TomlSection::flag(std::string_view key) {
+  const toml::node* node = find(key);
+  if (!node) return std::nullopt;
+  if (!node->is_boolean()) throw InputError(where(key), "this is " + kind_of(*node), "expected true or false");
+  return node->value<bool>();
+}
+
 std::optional<Quantity> TomlSection::quantity(std::string_view key) {
   const toml::node* node = find(key);
   if (!node) return std::nullopt;

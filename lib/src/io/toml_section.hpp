@@ -22,6 +22,7 @@ class TomlSection {
   std::optional<std::string> text(std::string_view key);
   std::string required_text(std::string_view key);
   std::optional<double> number(std::string_view key);
+  std::optional<bool> flag(std::string_view key);
   /// `2.8`, `{ value = 2.8, sd = 0.2 }` or `{ value = 2.8, relative_sd = 0.07 }`.
   std::optional<Quantity> quantity(std::string_view key);
   std::optional<TomlSection> section(std::string_view key);

@@ -1,170 +1,45 @@
+// One result per spot, angle and route: areas into measurements, measurements into thicknesses or bounds.
 #include "pellicle/job/thickness_job.hpp"
 
 #include <algorithm>
 #include <cmath>
 #include <map>
-#include <set>
-#include <tuple>
 
-#include "base/nearest.hpp"
+#include <boost/math/distributions/chi_squared.hpp>
+
+#include "job/finding_pool.hpp"
+#include "job/measurements.hpp"
+#include "job/overlying.hpp"
+#include "job/reference.hpp"
+#include "job/thickness_monte_carlo.hpp"
+#include "pellicle/base/constants.hpp"
 #include "pellicle/base/error.hpp"
 #include "pellicle/base/number.hpp"
-#include "pellicle/sample/emission.hpp"
-#include "pellicle/transport/calibrated_length.hpp"
+#include "pellicle/base/parallel.hpp"
+#include "pellicle/uncertainty/detection.hpp"
 
 namespace pellicle {
 namespace {
 
-/// Two lengths predicted by one formula for one material share nearly all of their error.
-constexpr double kSameFormulaCorrelation = 0.9;
+using detail::LineArea;
+using detail::Measurement;
 
-const Line& line_of(const Run& run, const std::string& label) {
-  if (const Line* line = run.find_line(label)) return *line;
-  std::vector<std::string> labels;
-  for (const Line& line : run.lines) labels.push_back(line.label);
-  throw InputError(run.place, "no line is labelled \"" + label + "\"", detail::name_hint(label, labels));
-}
+/// Monte Carlo is run without being asked for up to this many results.
+constexpr std::size_t kMonteCarloResults = 20;
+constexpr double kOneSided95 = 1.6448536269514722;
 
-void check_emitter(const Run& run, const Line& line) {
-  if (!line.level) return;
-  const Material& material = run.sample.material(line.from);
-  if (material.formula.count(line.level->element->symbol) > 0.0) return;
-  throw InputError(run.place, "line \"" + line.label + "\" is a line of " + line.level->element->symbol + ", which " +
-                                  material.id + " (" + line.from + ") does not hold",
-                   "check from and level of this line");
-}
+/// What a route needs besides itself, settled once for all spots.
+struct RouteWork {
+  const ThicknessRoute* route;
+  std::vector<detail::OverlyingLayer> overlying;
+};
 
-void check_geometry(const Run& run, const Line& film, const Line& substrate) {
-  if (film.from == kSubstrate) {
-    throw InputError(run.place, "the film line \"" + film.label + "\" comes from the substrate",
-                     "the film line of a reference comes from a layer");
-  }
-  if (substrate.from != kSubstrate) {
-    throw InputError(run.place, "the substrate line \"" + substrate.label + "\" comes from layer \"" + substrate.from + "\"",
-                     "the substrate line of a reference comes from the substrate");
-  }
-  const std::size_t position = run.sample.position(film.from);
-  if (position + 1 != run.sample.layers.size()) {
-    throw InputError(run.place, "layer \"" + run.sample.layers[position + 1].name + "\" lies between film \"" + film.from +
-                                    "\" and the substrate",
-                     "this equation is for a film that lies directly on the substrate");
-  }
-  check_emitter(run, film);
-  check_emitter(run, substrate);
-}
-
-bool same_line(const Line& film, const Line& substrate) {
-  if (!film.level || !substrate.level) return film.kinetic_energy_ev == substrate.kinetic_energy_ev;
-  return film.level->name == substrate.level->name;
-}
-
-void check_doublets(const Run& run, const Line& film, const Line& substrate) {
-  if (!film.level || !substrate.level) return;
-  const CoreLevel& f = *film.level;
-  const CoreLevel& s = *substrate.level;
-  if (f.element != s.element || f.subshell != s.subshell || f.levels == s.levels) return;
-  const bool film_is_half = f.is_half_doublet();
-  const double factor = film_is_half ? s.occupancy / f.occupancy : f.occupancy / s.occupancy;
-  throw InputError(run.place, "\"" + film.label + "\" is " + f.name + " but \"" + substrate.label + "\" is " + s.name +
-                                  ": their areas differ by a factor of about " + rounded_text(factor, 3) + " for the doublet alone",
-                   "fit both lines as full doublets or both as the same half");
-}
-
-LengthUsed length_of(const Run& run, const Line& line, const std::string& layer, double energy_ev) {
-  const Material& material = run.sample.material(layer);
-  LengthUsed used;
-  used.material = material.id;
-  used.energy_ev = energy_ev;
-  if (const auto given = line.length_nm.find(layer); given != line.length_nm.end()) {
-    used.length_nm = given->second;
-    used.origin = "given";
-    return used;
-  }
-  if (!run.length_set.empty() && line.level) {
-    const CalibratedLength& row = calibrated_length(run.length_set, material.id, line.level->name, run.source.name);
-    used.length_nm = row.length_nm;
-    used.origin = "set " + row.set;
-    if (row.mark != "published") {
-      add_finding(used.findings, {"length_from_memory", Severity::note,
-                                  "the length set " + row.set + " (" + row.source + ") is " + row.mark +
-                                      "; verify it against your copy of the source"});
-    }
-    return used;
-  }
-  const AttenuationLength predicted = attenuation_length(material, energy_ev);
-  used.length_nm = Quantity(predicted.value_nm, predicted.standard_uncertainty_nm);
-  used.origin = "predicted: " + predicted.model + (predicted.imfp_model.empty() ? "" : " on " + predicted.imfp_model);
-  used.findings = predicted.findings;
-  add_finding(used.findings, {"length_predicted", Severity::note,
-                              "the attenuation length in " + material.id + " at " + energy_text(energy_ev) +
-                                  " eV is predicted (" + predicted.model + "), not measured",
-                              predicted.value_nm});
-  return used;
-}
-
-ThicknessPair make_pair(const Run& run, const Line& film, const Line& substrate) {
-  check_geometry(run, film, substrate);
-  check_doublets(run, film, substrate);
-  ThicknessPair pair;
-  pair.layer = film.from;
-  pair.film_line = film.label;
-  pair.substrate_line = substrate.label;
-
-  const bool given_in_film = film.length_nm.contains(pair.layer);
-  const bool given_in_substrate_line = substrate.length_nm.contains(pair.layer);
-  if (same_line(film, substrate)) {
-    // One line, one length: that of the substrate's line, whose electrons cross the film.
-    if (given_in_film && given_in_substrate_line &&
-        film.length_nm.at(pair.layer).value != substrate.length_nm.at(pair.layer).value) {
-      throw InputError(run.place, "\"" + film.label + "\" and \"" + substrate.label + "\" are the same line but state different lengths in layer \"" +
-                                      pair.layer + "\"", "state one length for both");
-    }
-    pair.film_length = length_of(run, given_in_film ? film : substrate, pair.layer, substrate.kinetic_energy_ev);
-  } else {
-    pair.film_length = length_of(run, film, pair.layer, film.kinetic_energy_ev);
-    pair.substrate_length = length_of(run, substrate, pair.layer, substrate.kinetic_energy_ev);
-    add_findings(pair.findings, pair.substrate_length->findings);
-    if (run.sample.position(pair.layer) > 0) {
-      add_finding(pair.findings, {"contamination_uncorrected", Severity::warning,
-                                  "layers above the film attenuate the two lines differently, since their energies differ; "
-                                  "this is not corrected",
-                                  film.kinetic_energy_ev - substrate.kinetic_energy_ev, 0.0});
-    }
-  }
-  add_findings(pair.findings, pair.film_length.findings);
-  return pair;
-}
-
-void set_reference_areas(const Run& run, ThicknessPair& pair, const Line& film, const Line& substrate) {
-  const Quantity& f = *film.reference_area;
-  const Quantity& s = *substrate.reference_area;
-  if (!(f.value > 0.0) || !(s.value > 0.0)) throw InputError(run.place, "a reference_area is not a number > 0");
-  pair.reference_film_area = f;
-  pair.reference_substrate_area = s;
-  pair.reference_origin = "reference areas";
-  pair.reference_ratio = f.value / s.value;
-  if (f.standard_uncertainty && s.standard_uncertainty) {
-    pair.reference_ratio.standard_uncertainty = pair.reference_ratio.value * std::hypot(f.sd() / f.value, s.sd() / s.value);
-  }
-}
-
-/// The area of a row with its uncertainty: stated, counted, or assumed with a finding.
-Quantity area_quantity(const AreaRow& row, AreaUnit unit, Findings& findings) {
-  if (row.area_sd) return {row.area, *row.area_sd};
-  if (const std::optional<double> sd = counting_uncertainty(row.area, unit, row.counting)) {
-    if (!row.counting.background_counts) {
-      add_finding(findings, {"background_not_given", Severity::note,
-                             "no background counts are given, so the counting uncertainty leaves the background out"});
-    }
-    return {row.area, *sd};
-  }
-  const double relative = assumed_value("area_relative_sd");
-  add_finding(findings, {"assumed", Severity::warning,
-                         "the uncertainty of the areas is assumed to be " + rounded_text(100.0 * relative, 2) +
-                             " % (common practice, no source)",
-                         relative});
-  return {row.area, relative * std::abs(row.area)};
-}
+/// A result with the findings it alone has.
+struct Evaluated {
+  ThicknessResult result;
+  Findings findings;
+  std::optional<FilmMeasurement> measurement;  ///< kept for Monte Carlo
+};
 
 Quantity emission_quantity(const Run& run, double emission_deg, Findings& findings) {
   if (run.emission_sd_deg) return {emission_deg, *run.emission_sd_deg};
@@ -176,64 +51,373 @@ Quantity emission_quantity(const Run& run, double emission_deg, Findings& findin
   return {emission_deg, sd};
 }
 
-void estimate(const Run& run, const ThicknessPair& pair, const AreaRow& film, const AreaRow& substrate, ThicknessResult& result) {
-  Findings findings;
-  AreaMeasurement m;
-  m.film_area = area_quantity(film, run.area_unit, findings);
-  m.substrate_area = area_quantity(substrate, run.area_unit, findings);
-  if (pair.reference_film_area) {
-    m.reference_film_area = pair.reference_film_area;
-    m.reference_substrate_area = pair.reference_substrate_area;
-  } else {
-    m.reference_ratio = pair.reference_ratio;
+void note_area(const LineArea& area, Findings& findings) {
+  if (area.sd_assumed) {
+    const double relative = assumed_value("area_relative_sd");
+    add_finding(findings, {"assumed", Severity::warning,
+                           "the uncertainty of the areas is assumed to be " + rounded_text(100.0 * relative, 2) +
+                               " % (common practice, no source)",
+                           relative});
   }
-  m.film_line_length_nm = pair.film_length.length_nm;
-  if (pair.substrate_length) {
-    m.substrate_line_length_nm = pair.substrate_length->length_nm;
-    if (pair.film_length.origin == pair.substrate_length->origin && pair.film_length.origin != "given") {
-      m.length_correlation = kSameFormulaCorrelation;
-    }
-  }
-  m.emission_deg = emission_quantity(run, result.emission_deg, findings);
-  result.film_area = m.film_area;
-  result.substrate_area = m.substrate_area;
-  try {
-    Thickness thickness = thickness_from_areas(m);
-    add_findings(thickness.findings, findings);
-    add_findings(thickness.findings, pair.findings);
-    result.thickness = std::move(thickness);
-  } catch (const Error& e) {
-    result.failure = e.what();
+  if (area.background_missing) {
+    add_finding(findings, {"background_not_given", Severity::note,
+                           "no background counts are given, so the counting uncertainty leaves the background out"});
   }
 }
 
-ThicknessSummary summarise(const std::vector<ThicknessResult>& results, std::size_t pair) {
-  ThicknessSummary summary;
-  summary.pair = pair;
-  double sum = 0.0, repeatability_squares = 0.0, scale_sum = 0.0;
-  for (const ThicknessResult& r : results) {
-    if (r.pair != pair) continue;
-    if (!r.thickness) {
-      ++summary.failed;
-      continue;
+/// Sum of the other lines over their sensitivities, and the one length that attenuates it like its parts do.
+struct OtherLines {
+  Quantity amount;
+  std::vector<std::pair<double, double>> amount_and_length;
+};
+
+OtherLines other_lines(const Run& run, const ThicknessRoute& route, const Measurement& m) {
+  OtherLines sum;
+  double variance = 0.0;
+  for (std::size_t l = 0; l < run.lines.size(); ++l) {
+    if (l == *route.film_line || !m.lines[l]) continue;
+    const double s = run.lines[l].sensitivity ? run.lines[l].sensitivity->value : 1.0;
+    const double amount = m.lines[l]->value / s;
+    const double relative = run.lines[l].sensitivity ? run.lines[l].sensitivity->standard_uncertainty.value_or(assumed_value("sensitivity_relative_sd") * s) / s : 0.0;
+    sum.amount.value += amount;
+    variance += std::pow(m.lines[l]->sd / s, 2) + std::pow(relative * amount, 2);
+    sum.amount_and_length.emplace_back(amount, organic_attenuation_length_nm(run.lines[l].kinetic_energy_ev));
+  }
+  sum.amount.standard_uncertainty = std::sqrt(variance);
+  return sum;
+}
+
+/// The length L for which exp(d/(L c)) equals the amount-weighted mean of exp(d/(Lᵢ c)).
+double common_length(const OtherLines& others, double reduced_depth) {
+  double sum = 0.0, reciprocal = 0.0;
+  for (const auto& [amount, length] : others.amount_and_length) {
+    sum += amount * std::exp(reduced_depth / length);
+    reciprocal += amount / length;
+  }
+  if (!(reduced_depth > 0.0)) return others.amount.value / reciprocal;
+  return reduced_depth / std::log(sum / others.amount.value);
+}
+
+/// The thickness whose sum of other lines fits: the common length depends on it, a few passes settle it.
+Quantity settle_common_length(FilmMeasurement& m, const OtherLines& others) {
+  Quantity length(common_length(others, 0.0));
+  length.standard_uncertainty = m.film_line_length_nm.sd() / m.film_line_length_nm.value * length.value;
+  const double cosine = std::cos(m.emission_deg.value * kRadianPerDegree);
+  for (int pass = 0; pass < 50; ++pass) {
+    m.substrate_line_length_nm = length;
+    const double t = thickness_from_factors(m).value_nm;
+    const double next = common_length(others, t / cosine);
+    const bool settled = std::abs(next / length.value - 1.0) < 1e-14;
+    length.standard_uncertainty = length.sd() * next / length.value;
+    length.value = next;
+    if (settled) break;
+  }
+  return length;
+}
+
+SignalFactor area_factor(const char* name, const Quantity& area, double power) {
+  return {name, area, power, ContributionKind::repeatability, true};
+}
+
+/// The measurement of one spot by one route, with these areas.
+FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Measurement& m, const std::optional<Quantity>& film,
+                               const std::optional<Quantity>& substrate, const std::optional<Quantity>& contamination_nm, Findings& findings) {
+  const ThicknessRoute& route = *work.route;
+  FilmMeasurement general;
+  general.method = route.method;
+  if (film) general.factors.push_back(area_factor("film_area", *film, 1.0));
+  if (substrate) general.factors.push_back(area_factor("substrate_area", *substrate, route.method == ThicknessMethod::ratio ? -1.0 : 1.0));
+  general.factors.insert(general.factors.end(), route.factors.begin(), route.factors.end());
+  general.correlations = route.correlations;
+  general.film_line_length_nm = route.film_length.length_nm;
+  if (route.substrate_length) general.substrate_line_length_nm = route.substrate_length->length_nm;
+  general.emission_deg = emission_quantity(run, m.emission_deg, findings);
+  general.acceptance_half_angle_deg = run.geometry.acceptance_half_angle_deg;
+  general.length_given_for_angle = run.length_given_for_angle && route.film_length.origin == "given";
+
+  if (film && substrate && route.film_line && route.substrate_line) {
+    // Single components only: the correlation of sums is inside their uncertainties.
+    const auto& f = run.lines[*route.film_line].components;
+    const auto& s = run.lines[*route.substrate_line].components;
+    for (const AreaCorrelation& c : run.area_correlations) {
+      const bool match = f.size() == 1 && s.size() == 1 &&
+                         ((c.first == f[0].label && c.second == s[0].label) || (c.first == s[0].label && c.second == f[0].label));
+      if (match) general.correlations.push_back({"film_area", "substrate_area", c.coefficient});
     }
-    ++summary.count;
+  }
+  const bool single = route.method == ThicknessMethod::film_line || route.method == ThicknessMethod::substrate_line;
+  if (single && run.geometry.signal_area != SignalArea::analyser) {
+    general.factors.push_back({"tilt", Quantity(tilt_factor(run.geometry, m.emission_deg), 0.0), -1.0, ContributionKind::scale});
+  }
+  if (!work.overlying.empty()) {
+    const auto correction = detail::overlying_correction(work.overlying, route.method, m.emission_deg, contamination_nm);
+    if (correction) {
+      general.factors.push_back(*correction);
+    } else {
+      add_finding(findings, {"contamination_uncorrected", Severity::warning,
+                             "layers above the film attenuate its lines and no thickness is known for them; this is not corrected "
+                             "(state thickness_nm of the layer, or a [contamination] route)"});
+    }
+  }
+  return general;
+}
+
+void set_areal_densities(const ThicknessRoute& route, ThicknessResult& result) {
+  const Thickness& t = *result.thickness;
+  const double sd = result.standard_uncertainty_nm();
+  const double relative_t = t.value_nm > 0.0 ? sd / t.value_nm : 0.0;
+  // A predicted length falls as the density rises, so their product hardly depends on it; a given one does not.
+  const double density = route.film_length.predicted ? 0.0 : assumed_value("film_density_relative_sd");
+  const double relative = std::hypot(relative_t, density);
+  const auto quantity = [&](double per_nm) {
+    const double value = per_nm * t.value_nm;
+    return Quantity(value, t.value_nm > 0.0 ? relative * value : per_nm * sd);
+  };
+  result.areal_density_ug_cm2 = quantity(0.1 * route.density_g_cm3);  // 1 nm of 1 g/cm³ is 0.1 µg/cm²
+  if (route.emitter_density_per_nm3 > 0.0) result.emitting_atoms_per_nm2 = quantity(route.emitter_density_per_nm3);
+}
+
+/// Thickness with one area moved to a one-sided limit.
+double thickness_at(FilmMeasurement m, const char* name, double area) {
+  for (SignalFactor& f : m.factors) {
+    if (f.name == name) f.quantity = Quantity(area, 0.0);
+  }
+  return thickness_from_factors(m).value_nm;
+}
+
+void bound_from_undetected(const Run& run, const RouteWork& work, const Measurement& m, const LineArea* film, const LineArea* substrate,
+                           const std::optional<Quantity>& contamination_nm, Evaluated& e) {
+  const bool film_lost = film && !film->detected();
+  const bool substrate_lost = substrate && !substrate->detected();
+  if (film_lost && substrate_lost) {
+    e.result.failure = "neither the film's nor the substrate's line is detected";
+    return;
+  }
+  const LineArea& lost = film_lost ? *film : *substrate;
+  if (!(lost.sd > 0.0) || lost.sd_assumed) {
+    e.result.failure = std::string("the ") + (film_lost ? "film's" : "substrate's") +
+                       " line has no area, and neither area_sd nor background_counts say how weak it may be";
+    return;
+  }
+  const double limit = upper_bound_95(lost.value, lost.sd);
+  const std::optional<Quantity> film_area = film ? std::optional(Quantity(film_lost ? limit : film->value, film_lost ? 0.0 : film->sd)) : std::nullopt;
+  const std::optional<Quantity> substrate_area =
+      substrate ? std::optional(Quantity(substrate_lost ? limit : substrate->value, substrate_lost ? 0.0 : substrate->sd)) : std::nullopt;
+  const FilmMeasurement general = measurement_of(run, work, m, film_area, substrate_area, contamination_nm, e.findings);
+  const Thickness at_limit = thickness_from_factors(general);
+  e.result.bound = ThicknessBound{film_lost, at_limit.value_nm};
+  add_findings(e.findings, at_limit.findings);
+  add_finding(e.findings, {film_lost ? "film_not_detected" : "substrate_not_detected", Severity::warning,
+                           film_lost ? "the film's line is not detected: the thickness is at most the bound (95 %)"
+                                     : "the substrate's line is not detected: the thickness is at least the bound (95 %)",
+                           lost.value, lost.decision_level()});
+}
+
+/// A single line beyond its reference area: the area moved by 1.645 u toward it bounds the thickness.
+bool bound_from_excess(const ThicknessRoute& route, const FilmMeasurement& general, const LineArea& area, Evaluated& e) {
+  const bool film = route.method == ThicknessMethod::film_line;
+  if (!film && route.method != ThicknessMethod::substrate_line) return false;
+  const double low = area.value - kOneSided95 * area.sd;
+  if (!(low > 0.0)) return false;
+  try {
+    e.result.bound = ThicknessBound{!film, thickness_at(general, film ? "film_area" : "substrate_area", low)};
+  } catch (const Error&) {
+    return false;
+  }
+  add_finding(e.findings, {film ? "film_saturated" : "substrate_unattenuated", Severity::warning,
+                           film ? "the film's area reaches that of an infinitely thick film: the thickness is at least the bound (95 %)"
+                                : "the substrate's area reaches that of the bare substrate: the thickness is at most the bound (95 %)",
+                           area.value});
+  return true;
+}
+
+void note_detection(const LineArea& area, bool film, Findings& findings) {
+  const std::optional<double> limit = area.detection_limit();
+  if (!limit || area.value >= *limit) return;
+  add_finding(findings, {film ? "below_detection_limit" : "beyond_substrate_limit", Severity::warning,
+                         film ? "the film's area is below its detection limit; the thickness is hardly more than a hint"
+                              : "the substrate's area is below its detection limit; the film is thicker than this measurement can carry",
+                         area.value, *limit});
+}
+
+Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_index, const Measurement& m, const std::optional<Quantity>& contamination_nm) {
+  const ThicknessRoute& route = *work.route;
+  Evaluated e;
+  e.result.table = m.table;
+  e.result.spot = m.spot;
+  e.result.emission_deg = m.emission_deg;
+  e.result.route = route_index;
+  const bool sum_route = route.contamination == ContaminationRoute::sensitivities;
+  for (const std::optional<std::size_t>& line : {route.film_line, route.substrate_line}) {
+    if (line && !m.lines[*line]) {
+      e.result.failure = m.missing[*line];
+      return e;
+    }
+  }
+  const LineArea* film = route.film_line ? &*m.lines[*route.film_line] : nullptr;
+  const LineArea* substrate = route.substrate_line ? &*m.lines[*route.substrate_line] : nullptr;
+  if (film) e.result.film_area = Quantity(film->value, film->sd);
+  if (substrate) e.result.substrate_area = Quantity(substrate->value, substrate->sd);
+  for (const LineArea* area : {film, substrate}) {
+    if (area) note_area(*area, e.findings);
+  }
+  try {
+    if ((film && !film->detected()) || (substrate && !substrate->detected())) {
+      if (sum_route) {
+        e.result.failure = "the contamination line is not detected";
+        return e;
+      }
+      bound_from_undetected(run, work, m, film, substrate, contamination_nm, e);
+      return e;
+    }
+    FilmMeasurement general = measurement_of(run, work, m, e.result.film_area, e.result.substrate_area, contamination_nm, e.findings);
+    if (sum_route) {
+      const OtherLines others = other_lines(run, route, m);
+      if (!(others.amount.value > 0.0)) {
+        e.result.failure = "spot \"" + m.spot + "\" has no other line to compare the contamination with";
+        return e;
+      }
+      if (const auto& s = run.lines[*route.film_line].sensitivity) general.factors.push_back({"sensitivity", *s, -1.0, ContributionKind::scale});
+      general.factors.push_back({"other_lines", others.amount, -1.0, ContributionKind::repeatability, true});
+      general.substrate_line_length_nm = settle_common_length(general, others);
+    }
+    try {
+      e.result.thickness = thickness_from_factors(general);
+    } catch (const DomainError&) {
+      const LineArea& area = film ? *film : *substrate;
+      if (bound_from_excess(route, general, area, e)) return e;
+      throw;
+    }
+    if (film) note_detection(*film, true, e.findings);
+    if (substrate) note_detection(*substrate, false, e.findings);
+    add_findings(e.findings, e.result.thickness->findings);
+    e.result.thickness->findings.clear();
+    set_areal_densities(route, e.result);
+    e.measurement = std::move(general);
+  } catch (const Error& failure) {
+    e.result.failure = failure.what();
+  }
+  return e;
+}
+
+void add_monte_carlo(const Run& run, std::size_t stream, const ThicknessRoute& route, Evaluated& e) {
+  if (!e.result.thickness || !e.measurement) return;
+  e.result.monte_carlo = detail::thickness_by_monte_carlo(*e.measurement, *e.result.thickness, run.uncertainty, stream);
+  set_areal_densities(route, e.result);
+  const MonteCarloThickness& mc = *e.result.monte_carlo;
+  if (!mc.gum_agrees) {
+    add_finding(e.findings, {"gum_disagrees", Severity::note,
+                             "Monte Carlo and GUM intervals differ by more than the last quoted digit; the Monte Carlo one is quoted [jcgm101]"});
+  }
+  constexpr double kAsymmetry = 1.25;
+  const double up = mc.interval_nm.high95 - e.result.thickness->value_nm;
+  const double down = e.result.thickness->value_nm - mc.interval_nm.low95;
+  const double asymmetry = std::max(up, down) / std::max(std::min(up, down), 1e-300);
+  if (asymmetry > kAsymmetry) {
+    add_finding(e.findings, {"interval_not_symmetric", Severity::note,
+                             "the 95 % interval is not symmetric about the thickness; quote its two ends, not ± one number", asymmetry, kAsymmetry});
+  }
+  if (mc.rejected > 0) {
+    add_finding(e.findings, {"draws_rejected", Severity::note, "some Monte Carlo draws have no finite thickness and were left out",
+                             static_cast<double>(mc.rejected)});
+  }
+}
+
+/// Part of the budget that differs between angles of one spot: what repeats, and the angle.
+double angle_to_angle_sd(const Thickness& t) {
+  double variance = t.budget.repeatability * t.budget.repeatability;
+  for (const BudgetRow& row : t.budget.rows) {
+    if (row.name == kEmissionName) variance += row.contribution * row.contribution;
+  }
+  return std::sqrt(variance);
+}
+
+/// χ² of the thicknesses of one spot at several angles; a film that is what the model says has one thickness.
+void compare_angles(ThicknessResults& all, detail::FindingPool& pool) {
+  std::map<std::tuple<std::size_t, std::size_t, std::string>, std::vector<std::size_t>> groups;
+  bool several = false;
+  for (std::size_t i = 0; i < all.results.size(); ++i) several = several || all.results[i].emission_deg != all.results.front().emission_deg;
+  if (!several) return;
+  for (std::size_t i = 0; i < all.results.size(); ++i) {
+    const ThicknessResult& r = all.results[i];
+    if (r.thickness) groups[{r.route, r.table, r.spot}].push_back(i);
+  }
+  for (const auto& [key, members] : groups) {
+    if (members.size() < 2) continue;
+    double weights = 0.0, mean = 0.0;
+    for (const std::size_t i : members) {
+      const double sd = angle_to_angle_sd(*all.results[i].thickness);
+      if (!(sd > 0.0)) return;
+      weights += 1.0 / (sd * sd);
+      mean += all.results[i].thickness->value_nm / (sd * sd);
+    }
+    mean /= weights;
+    double chi_square = 0.0;
+    for (const std::size_t i : members) {
+      const Thickness& t = *all.results[i].thickness;
+      chi_square += std::pow((t.value_nm - mean) / angle_to_angle_sd(t), 2);
+    }
+    const double limit = boost::math::quantile(boost::math::chi_squared(static_cast<double>(members.size() - 1)), 0.95);
+    if (chi_square <= limit) continue;
+    const std::uint32_t finding = pool.add({"angles_disagree", Severity::warning,
+                                            "the angles of one spot give different thicknesses; islands, roughness, a wrong reference ratio, a swapped "
+                                            "angle convention or an angle offset would do that",
+                                            chi_square, limit});
+    for (const std::size_t i : members) all.results[i].findings.push_back(finding);
+  }
+}
+
+/// Results far from the rest, by the modified z score of Iglewicz and Hoaglin (1993): 0.6745 |x − median|/MAD > 3.5.
+std::vector<std::size_t> outliers_of(const std::vector<ThicknessResult>& results, const std::vector<std::size_t>& members) {
+  constexpr std::size_t kFewest = 5;
+  if (members.size() < kFewest) return {};
+  const auto median = [](std::vector<double> v) {
+    const auto middle = v.begin() + static_cast<std::ptrdiff_t>(v.size() / 2);
+    std::nth_element(v.begin(), middle, v.end());
+    if (v.size() % 2 == 1) return *middle;
+    return 0.5 * (*middle + *std::max_element(v.begin(), middle));
+  };
+  std::vector<double> values;
+  for (const std::size_t i : members) values.push_back(results[i].thickness->value_nm);
+  const double centre = median(values);
+  for (double& v : values) v = std::abs(v - centre);
+  const double spread = median(values);
+  if (!(spread > 0.0)) return {};
+  std::vector<std::size_t> outliers;
+  for (std::size_t k = 0; k < members.size(); ++k) {
+    if (0.6745 * values[k] / spread > 3.5) outliers.push_back(members[k]);
+  }
+  return outliers;
+}
+
+ThicknessSummary summarise(const std::vector<ThicknessResult>& results, std::size_t route) {
+  ThicknessSummary summary;
+  summary.route = route;
+  std::vector<std::size_t> members;
+  double sum = 0.0, repeatability_squares = 0.0, scale_sum = 0.0;
+  for (std::size_t i = 0; i < results.size(); ++i) {
+    const ThicknessResult& r = results[i];
+    if (r.route != route) continue;
+    if (r.bound) ++summary.bounds;
+    if (!r.thickness && !r.bound) ++summary.failed;
+    if (!r.thickness) continue;
+    members.push_back(i);
     sum += r.thickness->value_nm;
     repeatability_squares += r.thickness->budget.repeatability * r.thickness->budget.repeatability;
     scale_sum += r.thickness->budget.scale;
     summary.scale_stated = summary.scale_stated && r.thickness->scale_stated;
   }
-  if (summary.count == 0) return summary;
-  const double n = static_cast<double>(summary.count);
+  summary.count = members.size();
+  if (members.empty()) return summary;
+  const double n = static_cast<double>(members.size());
   summary.mean_nm = sum / n;
   // A common error moves every result the same way, so it is averaged over results but not divided by √n.
   summary.scale_nm = scale_sum / n;
   summary.repeatability_of_mean_nm = std::sqrt(repeatability_squares) / n;
-  if (summary.count < 2) return summary;
+  summary.outliers = outliers_of(results, members);
+  if (members.size() < 2) return summary;
   double squares = 0.0;
-  for (const ThicknessResult& r : results) {
-    if (r.pair == pair && r.thickness) squares += std::pow(r.thickness->value_nm - summary.mean_nm, 2);
-  }
+  for (const std::size_t i : members) squares += std::pow(results[i].thickness->value_nm - summary.mean_nm, 2);
   summary.standard_deviation_nm = std::sqrt(squares / (n - 1.0));
   // What the spots really do counts more than what counting statistics promises.
   summary.repeatability_of_mean_nm = std::max(summary.repeatability_of_mean_nm, *summary.standard_deviation_nm / std::sqrt(n));
@@ -242,91 +426,73 @@ ThicknessSummary summarise(const std::vector<ThicknessResult>& results, std::siz
 
 }  // namespace
 
-std::vector<ThicknessPair> thickness_pairs(const Run& run) {
-  std::vector<ThicknessPair> pairs;
-  const auto known = [&](const std::string& film, const std::string& substrate) {
-    return std::any_of(pairs.begin(), pairs.end(), [&](const ThicknessPair& p) {
-      return p.film_line == film && p.substrate_line == substrate;
-    });
-  };
-  for (const ReferenceRatio& reference : run.references) {
-    if (known(reference.film, reference.substrate)) {
-      throw InputError(run.place, "two references name the pair \"" + reference.film + "\" and \"" + reference.substrate + "\"");
-    }
-    if (!(reference.ratio.value > 0.0)) {
-      throw InputError(run.place, "the reference ratio " + number_text(reference.ratio.value) + " is not a number > 0");
-    }
-    ThicknessPair pair = make_pair(run, line_of(run, reference.film), line_of(run, reference.substrate));
-    pair.reference_ratio = reference.ratio;
-    pair.reference_origin = "given";
-    pairs.push_back(std::move(pair));
-  }
-  for (const Line& film : run.lines) {
-    if (film.from == kSubstrate || !film.reference_area) continue;
-    for (const Line& substrate : run.lines) {
-      if (substrate.from != kSubstrate || !substrate.reference_area || known(film.label, substrate.label)) continue;
-      ThicknessPair pair = make_pair(run, film, substrate);
-      set_reference_areas(run, pair, film, substrate);
-      pairs.push_back(std::move(pair));
-    }
-  }
-  if (pairs.empty()) {
-    throw InputError(run.place, "no reference ratio is given",
-                     "add a [[reference]] with film, substrate and ratio, or reference_area to a film line and a substrate line");
-  }
-  return pairs;
+double ThicknessResult::standard_uncertainty_nm() const {
+  return monte_carlo ? monte_carlo->standard_uncertainty_nm : thickness ? thickness->standard_uncertainty_nm : 0.0;
 }
 
-ThicknessResults run_thickness(const Run& run) {
+Interval ThicknessResult::interval_nm() const {
+  return monte_carlo ? monte_carlo->interval_nm : thickness ? thickness->interval_nm : Interval{};
+}
+
+Findings ThicknessResults::findings_of(const ThicknessResult& result) const {
+  Findings own;
+  for (const std::uint32_t i : result.findings) own.push_back(findings[i]);
+  return own;
+}
+
+ThicknessResults run_thickness(const Run& run, const Progress& progress) {
   ThicknessResults all;
-  all.pairs = thickness_pairs(run);
-
-  // Rows by spot and angle, in the order in which they first appear.
-  std::map<std::pair<std::string, double>, std::size_t> index;
-  struct Group {
-    std::string spot;
-    double emission_deg;
-    std::map<std::string, const AreaRow*, std::less<>> by_line;
-  };
-  std::vector<Group> groups;
-  for (const AreaRow& row : run.areas) {
-    if (!run.find_line(row.line)) {
-      std::vector<std::string> labels;
-      for (const Line& line : run.lines) labels.push_back(line.label);
-      throw InputError(row.place, "line \"" + row.line + "\" is not declared", detail::name_hint(row.line, labels));
-    }
-    if (!row.emission_deg && !run.emission_deg) {
-      throw InputError(row.place, "the row states no emission angle", "add a column emission_deg, or emission_deg under [instrument]");
-    }
-    const double emission = row.emission_deg.value_or(run.emission_deg.value_or(0.0));
-    const auto [found, fresh] = index.try_emplace({row.spot, emission}, groups.size());
-    if (fresh) groups.push_back({row.spot, emission, {}});
-    if (!groups[found->second].by_line.try_emplace(row.line, &row).second) {
-      throw InputError(row.place, "spot \"" + row.spot + "\" has line \"" + row.line + "\" twice at " + number_text(emission) + " deg emission",
-                       "give repeated measurements spots of their own");
-    }
+  all.routes = thickness_routes(run);
+  const std::vector<Measurement> measurements = detail::collect_measurements(run);
+  std::vector<RouteWork> work;
+  std::optional<std::size_t> contamination;
+  for (std::size_t r = 0; r < all.routes.size(); ++r) {
+    work.push_back({&all.routes[r], detail::overlying_layers(run, all.routes[r])});
+    if (all.routes[r].contamination) contamination = r;
   }
-  if (groups.empty()) throw InputError(run.place, "the run holds no areas", "give [data] areas");
+  const std::size_t count = measurements.size() * work.size();
+  const IntervalMethod method = run.uncertainty.method;
+  const bool draw = method == IntervalMethod::monte_carlo || method == IntervalMethod::adaptive_monte_carlo ||
+                    (method == IntervalMethod::automatic && count <= kMonteCarloResults);
 
-  for (const Group& group : groups) {
-    for (std::size_t p = 0; p < all.pairs.size(); ++p) {
-      const ThicknessPair& pair = all.pairs[p];
-      ThicknessResult result;
-      result.spot = group.spot;
-      result.emission_deg = group.emission_deg;
-      result.pair = p;
-      const auto film = group.by_line.find(pair.film_line);
-      const auto substrate = group.by_line.find(pair.substrate_line);
-      if (film == group.by_line.end() || substrate == group.by_line.end()) {
-        const std::string& missing = film == group.by_line.end() ? pair.film_line : pair.substrate_line;
-        result.failure = "spot \"" + group.spot + "\" has no area of line \"" + missing + "\"";
-      } else {
-        estimate(run, pair, *film->second, *substrate->second, result);
+  detail::FindingPool pool(all.findings);
+  all.results.reserve(count);
+  // Chunks bound the memory of findings that are not pooled yet.
+  constexpr std::size_t kChunk = 16 * kBlockSize;
+  std::vector<Evaluated> chunk;
+  for (std::size_t begin = 0; begin < measurements.size(); begin += kChunk) {
+    const std::size_t size = std::min(kChunk, measurements.size() - begin);
+    chunk.assign(size * work.size(), {});
+    for_each_block(size, [&](std::size_t low, std::size_t high) {
+      for (std::size_t i = low; i < high; ++i) {
+        const Measurement& m = measurements[begin + i];
+        std::optional<Quantity> contamination_nm;
+        for (std::size_t r = 0; r < work.size(); ++r) {
+          Evaluated& e = chunk[i * work.size() + r];
+          e = evaluate(run, work[r], r, m, contamination_nm);
+          if (contamination == r && e.result.thickness) {
+            contamination_nm = Quantity(e.result.thickness->value_nm, e.result.thickness->standard_uncertainty_nm);
+          }
+        }
       }
-      all.results.push_back(std::move(result));
+    });
+    for (std::size_t i = 0; i < chunk.size(); ++i) {
+      Evaluated& e = chunk[i];
+      const ThicknessRoute& route = all.routes[e.result.route];
+      if (draw) add_monte_carlo(run, begin * work.size() + i, route, e);
+      for (const Findings* findings : {&std::as_const(e.findings), &route.findings}) {
+        for (const Finding& f : *findings) {
+          const std::uint32_t index = pool.add(f);
+          if (std::find(e.result.findings.begin(), e.result.findings.end(), index) == e.result.findings.end()) e.result.findings.push_back(index);
+        }
+      }
+      all.results.push_back(std::move(e.result));
+      if (draw && progress && !progress(all.results.size(), count)) throw ConvergenceError("thickness", "stopped before all results were done");
     }
+    if (progress && !progress(all.results.size(), count)) throw ConvergenceError("thickness", "stopped before all results were done");
   }
-  for (std::size_t p = 0; p < all.pairs.size(); ++p) all.summaries.push_back(summarise(all.results, p));
+  compare_angles(all, pool);
+  for (std::size_t r = 0; r < all.routes.size(); ++r) all.summaries.push_back(summarise(all.results, r));
   return all;
 }
 

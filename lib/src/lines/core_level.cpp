@@ -59,10 +59,11 @@ CoreLevel make_level(const Element& e, const std::vector<const LevelRow*>& rows,
     level.source = row->source;
     level.mark = row->mark;
   }
-  // A filler row may state no occupancy; then the mean is a plain one.
-  if (level.occupancy > 0.0) {
+  if (rows.size() == 1) {
+    level.binding_energy_ev = rows.front()->binding_energy_ev;
+  } else if (level.occupancy > 0.0) {
     level.binding_energy_ev /= level.occupancy;
-  } else {
+  } else {  // a filler pair without electrons: plain mean
     for (const LevelRow* row : rows) level.binding_energy_ev += row->binding_energy_ev / static_cast<double>(rows.size());
   }
   return level;
@@ -75,7 +76,8 @@ bool CoreLevel::is_half_doublet() const noexcept {
 }
 
 std::vector<CoreLevel> core_levels(const Element& e) {
-  std::vector<CoreLevel> all;
+  // A full doublet stands before its members; subshells by falling energy.
+  std::vector<std::vector<CoreLevel>> groups;
   const std::vector<LevelRow>& rows = rows_of(e);
   std::vector<std::string> done;
   for (const LevelRow& row : rows) {
@@ -86,13 +88,17 @@ std::vector<CoreLevel> core_levels(const Element& e) {
     for (const LevelRow& other : rows) {
       if (subshell_of(other.level) == subshell) members.push_back(&other);
     }
-    all.push_back(make_level(e, members, subshell));
+    std::vector<CoreLevel> group = {make_level(e, members, subshell)};
     if (members.size() == 2) {
-      for (const LevelRow* member : members) all.push_back(make_level(e, {member}, member->level));
+      for (const LevelRow* member : members) group.push_back(make_level(e, {member}, member->level));
     }
+    groups.push_back(std::move(group));
   }
-  std::stable_sort(all.begin(), all.end(),
-                   [](const CoreLevel& a, const CoreLevel& b) { return a.binding_energy_ev > b.binding_energy_ev; });
+  std::stable_sort(groups.begin(), groups.end(), [](const auto& a, const auto& b) {
+    return a.front().binding_energy_ev > b.front().binding_energy_ev;
+  });
+  std::vector<CoreLevel> all;
+  for (auto& group : groups) std::move(group.begin(), group.end(), std::back_inserter(all));
   return all;
 }
 
@@ -104,6 +110,7 @@ CoreLevel core_level(std::string_view name) {
   std::size_t split = 0;
   while (split < compact.size() && std::isalpha(static_cast<unsigned char>(compact[split]))) ++split;
   const std::string quoted = "line \"" + std::string(name) + "\"";
+  if (split > 0 && split == compact.size()) (void)element(compact);  // an unknown element is the better complaint
   if (split == 0 || split == compact.size()) {
     throw InputError("", quoted + " is not of the form \"element level\"", "expected for example \"Si 2p\" or \"Ti 2p3/2\"");
   }
@@ -122,7 +129,7 @@ CoreLevel core_level(std::string_view name) {
 double kinetic_energy_ev(const CoreLevel& level, const PhotonSource& source) {
   const double energy = source.photon_energy_ev - level.binding_energy_ev;
   if (!(energy > 0.0)) {
-    throw DomainError("", source.name + " (" + number_text(source.photon_energy_ev) + " eV) cannot reach " + level.name +
+    throw DomainError("", "photons of " + number_text(source.photon_energy_ev) + " eV cannot reach " + level.name +
                               " at " + energy_text(level.binding_energy_ev) + " eV binding energy",
                       "choose another line or source");
   }

@@ -43,26 +43,37 @@ std::optional<std::size_t> column_of(const PhotonSource& source) {
   return std::nullopt;
 }
 
-TabulatedValue refuse(const CoreLevel& level, const PhotonSource& source, const std::string& reason) {
-  return {std::nullopt, "no " + reason + " for " + level.name + " with " + source.name + "; give sensitivity", ""};
+TabulatedValue refuse(const char* what, const CoreLevel& level, const PhotonSource& source, const std::string& reason, const char* hint) {
+  return {std::nullopt, std::string("no ") + what + " for " + level.name + " with " + source.name + " (" + reason + ")" + hint, reason, ""};
+}
+
+/// The reason of this source out of "Ag La, Cr Ka: reason; Ga Ka: other reason".
+std::string reason_for(const std::string& refusal, const std::string& source) {
+  for (std::size_t begin = 0; begin < refusal.size();) {
+    const std::size_t end = std::min(refusal.find("; ", begin), refusal.size());
+    const std::string part = refusal.substr(begin, end - begin);
+    const std::size_t colon = part.find(": ");
+    if (colon != std::string::npos && part.substr(0, colon).find(source) != std::string::npos) return part.substr(colon + 2);
+    begin = end + 2;
+  }
+  return refusal;
 }
 
 }  // namespace
 
 TabulatedValue photoionisation_cross_section_barn(const CoreLevel& level, const PhotonSource& source) {
   static const Table table = load("photoionisation", "level", "_barn", true);
+  const auto refused = [&](const std::string& reason) { return refuse("reliable cross section", level, source, reason, "; give sensitivity"); };
   const std::optional<std::size_t> column = column_of(source);
-  if (!column) return refuse(level, source, "cross section is tabulated at this photon energy");
-  TabulatedValue result{0.0, {}, {}};
+  if (!column) return refused("tabulated at the five laboratory energies only");
+  TabulatedValue result{0.0, {}, {}, {}};
   for (const std::string& member : level.levels) {
     const auto found = table.find({level.element->z, member});
-    if (found == table.end()) return refuse(level, source, "cross section is tabulated");
+    if (found == table.end()) return refused("not tabulated");
     const Row& row = found->second;
     if (!row.values[*column]) {
       const bool below = source.photon_energy_ev <= level.binding_energy_ev;
-      return refuse(level, source,
-                    below || row.refusal.empty() ? "cross section (the photon energy is below the threshold)"
-                                                 : "reliable cross section (" + row.refusal + ")");
+      return refused(below || row.refusal.empty() ? "the photon energy is below the threshold" : reason_for(row.refusal, source.name));
     }
     *result.value += *row.values[*column];
     result.source = row.source;
@@ -72,15 +83,13 @@ TabulatedValue photoionisation_cross_section_barn(const CoreLevel& level, const 
 
 TabulatedValue asymmetry_parameter(const CoreLevel& level, const PhotonSource& source) {
   // Dipole selection leaves one channel for an s electron, hence cos² with full contrast.
-  if (level.subshell.back() == 's') return {2.0, {}, "cooper1968"};
+  if (level.subshell.back() == 's') return {2.0, {}, {}, "cooper1968"};
   static const Table table = load("asymmetry", "subshell", "", false);
   const std::optional<std::size_t> column = column_of(source);
-  if (!column) return refuse(level, source, "asymmetry parameter is tabulated at this photon energy");
+  if (!column) return refuse("asymmetry parameter", level, source, "tabulated at the five laboratory energies only", "");
   const auto found = table.find({level.element->z, level.subshell});
-  if (found == table.end() || !found->second.values[*column]) {
-    return refuse(level, source, "asymmetry parameter is tabulated");
-  }
-  return {found->second.values[*column], {}, found->second.source};
+  if (found == table.end() || !found->second.values[*column]) return refuse("asymmetry parameter", level, source, "not tabulated", "");
+  return {found->second.values[*column], {}, {}, found->second.source};
 }
 
 }  // namespace pellicle

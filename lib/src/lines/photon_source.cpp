@@ -54,7 +54,7 @@ const PhotonSource& photon_source(std::string_view name) {
     names.push_back(source.name);
   }
   throw InputError("", "unknown photon source \"" + std::string(name) + "\"",
-                   "expected one of: " + detail::join_names(names) + "; or give photon_energy_ev");
+                   "expected one of: " + detail::join_names(names) + "; or give the photon energy");
 }
 
 PhotonSource photon_source_of_energy(double photon_energy_ev) {

@@ -129,8 +129,13 @@ const Material& catalogue_material(std::string_view id_or_formula) {
     // A word with a hyphen or a lower-case start was meant as an id; anything else as a formula.
     const bool meant_as_id = text.find('-') != std::string::npos || text.empty() || (text[0] >= 'a' && text[0] <= 'z');
     if (!meant_as_id) throw;
+    std::vector<std::string> meant;
+    for (const Material& m : all) {
+      if (m.formula.text().size() == text.size() && detail::edit_distance(m.formula.text(), text) == 0) meant.push_back(m.id);
+    }
     throw InputError("", "no catalogued material has the id \"" + text + "\"",
-                     near.empty() ? "see `pellicle materials`" : "did you mean \"" + near + "\"?");
+                     !meant.empty() ? "did you mean: " + detail::join_names(meant) + "?"
+                     : near.empty() ? "see `pellicle materials`" : "did you mean \"" + near + "\"?");
   }
   std::vector<std::string> same;
   for (const Material& m : all) {
@@ -140,7 +145,7 @@ const Material& catalogue_material(std::string_view id_or_formula) {
   if (same.size() == 1) return *by_id(same.front());
   if (same.empty()) {
     throw InputError("", "no catalogued material has the formula \"" + text + "\"",
-                     "define it with its density, e.g. { formula = \"" + text + "\", density_g_cm3 = …, band_gap_ev = … }");
+                     "give its density and band gap beside the formula");
   }
   throw InputError("", "\"" + text + "\" names several catalogued materials",
                    "choose one of: " + detail::join_names(same));

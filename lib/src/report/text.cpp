@@ -20,33 +20,52 @@ constexpr const char* kNone = "–";
 std::string findings_text(const Findings& findings) {
   std::string text;
   for (const Finding& f : findings) {
-    text += fmt::format("  {:<8} ", severity_name(f.severity)) + detail::wrapped(f.code + ": " + f.text, kWidth, "           ") + "\n";
+    text += fmt::format("  {:<8} ", severity_name(f.severity)) + detail::wrapped(f.code + ": " + f.text, kWidth - 11, "           ") + "\n";
   }
   return text;
 }
 
+/// Each sentence once, whatever numbers raised it.
+Findings distinct(const Findings& findings) {
+  Findings once;
+  for (const Finding& finding : findings) add_finding(once, finding);
+  return once;
+}
+
 std::string quantity_text(const Quantity& q, const char* unit) {
   return value_with_uncertainty(q.value, q.standard_uncertainty) + (*unit ? std::string(" ") + unit : std::string()) +
-         (q.standard_uncertainty ? "" : " (uncertainty not given)");
+         (q.standard_uncertainty ? "" : ", uncertainty not given");
 }
 
 std::string optional_text(const std::optional<double>& value, int digits) {
   return value ? rounded_text(*value, digits) : std::string(kNone);
 }
 
-std::string pair_text(const Run& run, const ThicknessPair& pair) {
-  const Material& film = run.sample.material(pair.layer);
-  std::string text = fmt::format("{} on {}: \"{}\" over \"{}\", {} ({} eV)\n", film.id, run.sample.substrate.id, pair.film_line,
-                                 pair.substrate_line, run.source.name, number_text(run.source.photon_energy_ev));
-  text += fmt::format("  reference ratio   {} ({})\n", quantity_text(pair.reference_ratio, ""), pair.reference_origin);
-  text += fmt::format("  attenuation       {} in {} at {} eV ({})\n", quantity_text(pair.film_length.length_nm, "nm"),
-                      pair.film_length.material, energy_text(pair.film_length.energy_ev), pair.film_length.origin);
-  if (pair.substrate_length) {
-    text += fmt::format("  substrate line    {} in {} at {} eV ({})\n", quantity_text(pair.substrate_length->length_nm, "nm"),
-                        pair.substrate_length->material, energy_text(pair.substrate_length->energy_ev),
-                        pair.substrate_length->origin);
-  }
-  text += fmt::format("  densities         {} {} g/cm3, {} {} g/cm3\n", film.id, number_text(film.density_g_cm3),
+std::string reference_text(const ThicknessRoute& route) {
+  if (!route.reference_ratio) return route.reference_origin;
+  std::string text = quantity_text(*route.reference_ratio, "") + " (" + route.reference_origin + ")";
+  std::string applied;
+  for (const std::string& item : route.reference_applied) applied += (applied.empty() ? ": " : ", ") + item;
+  return text.substr(0, text.size() - 1) + applied + ")";
+}
+
+std::string length_text(const LengthUsed& used) {
+  return fmt::format("{} in {} at {} eV ({})", quantity_text(used.length_nm, "nm"), used.material, energy_text(used.energy_ev), used.origin);
+}
+
+std::string route_text(const Run& run, const ThicknessRoute& route) {
+  const Material& layer = run.sample.material(route.layer);
+  const auto quoted = [&](const std::optional<std::size_t>& line) { return "\"" + run.lines[*line].label + "\""; };
+  std::string lines = route.film_line ? quoted(route.film_line) : quoted(route.substrate_line);
+  if (route.film_line && route.substrate_line) lines += " over " + quoted(route.substrate_line);
+  if (route.contamination) lines += std::string(", route ") + contamination_route_name(*route.contamination);
+  if (route.method != ThicknessMethod::ratio && !route.contamination) lines += std::string(", method ") + method_name(route.method);
+  std::string text = fmt::format("{} on {}: {}, {} ({} eV)\n", layer.id, run.sample.substrate.id, lines, run.source.name,
+                                 number_text(run.source.photon_energy_ev));
+  text += fmt::format("  {:<17} {}\n", route.method == ThicknessMethod::ratio ? "reference ratio" : "reference", reference_text(route));
+  text += fmt::format("  {:<17} {}\n", route.substrate_length ? "film line" : "attenuation", length_text(route.film_length));
+  if (route.substrate_length) text += fmt::format("  {:<17} {}\n", "substrate line", length_text(*route.substrate_length));
+  text += fmt::format("  {:<17} {} {} g/cm3, {} {} g/cm3\n", "densities", layer.id, number_text(layer.density_g_cm3),
                       run.sample.substrate.id, number_text(run.sample.substrate.density_g_cm3));
   return text;
 }
@@ -62,59 +81,95 @@ std::string budget_text(const Budget& budget) {
 
 std::string scale_text(const Thickness& t) { return t.scale_stated ? rounded_text(t.budget.scale, 2) + " nm" : "not stated"; }
 
+std::string bound_text(const ThicknessBound& bound) {
+  return std::string(bound.upper ? "<= " : ">= ") + rounded_text(bound.at95_nm, 3);
+}
+
+int decimals_for(double sd) { return sd > 0.0 ? std::clamp(1 - static_cast<int>(std::floor(std::log10(sd))), 0, 6) : 3; }
+
+std::string interval_text(const Interval& i, double sd) {
+  const int decimals = decimals_for(sd);
+  return fmt::format("{:.{}f} to {:.{}f}", i.low95, decimals, i.high95, decimals);
+}
+
 std::string one_result_text(const ThicknessResult& r) {
   std::string text = fmt::format("spot {}, emission {} deg from the normal (take-off {} deg from the surface)\n", r.spot,
                                  rounded_text(r.emission_deg, 4), rounded_text(90.0 - r.emission_deg, 4));
+  if (r.bound) return text + fmt::format("  thickness         {} nm (95 % bound)\n", bound_text(*r.bound));
   if (!r.thickness) return text + "  no thickness: " + r.failure + "\n";
   const Thickness& t = *r.thickness;
-  const int decimals = t.standard_uncertainty_nm > 0.0
-                           ? std::clamp(1 - static_cast<int>(std::floor(std::log10(t.standard_uncertainty_nm))), 0, 6)
-                           : 3;
-  text += fmt::format("  thickness         {} nm   (95 %: {:.{}f} to {:.{}f} nm)\n",
-                      value_with_uncertainty(t.value_nm, t.standard_uncertainty_nm), t.interval_nm.low95, decimals,
-                      t.interval_nm.high95, decimals);
-  text += fmt::format("  repeatability     {} nm, thickness scale: {}\n\n", rounded_text(t.budget.repeatability, 2), scale_text(t));
-  return text + budget_text(t.budget);
+  const double sd = r.standard_uncertainty_nm();
+  text += fmt::format("  thickness         {} nm   (95 %: {} nm, {})\n", value_with_uncertainty(t.value_nm, sd),
+                      interval_text(r.interval_nm(), sd), r.monte_carlo ? "Monte Carlo" : "GUM");
+  if (r.monte_carlo) {
+    text += fmt::format("  GUM               {} nm   (95 %: {} nm), {}\n", value_with_uncertainty(t.value_nm, t.standard_uncertainty_nm),
+                        interval_text(t.interval_nm, t.standard_uncertainty_nm),
+                        r.monte_carlo->gum_agrees ? "agrees with Monte Carlo" : "differs from Monte Carlo");
+  }
+  if (!t.scale_stated) text += "  These uncertainties leave the thickness scale out: it is not stated.\n";
+  text += fmt::format("  repeatability     {} nm, thickness scale: {}\n", rounded_text(t.budget.repeatability, 2), scale_text(t));
+  text += fmt::format("  areal density     {} ug/cm2", value_with_uncertainty(r.areal_density_ug_cm2->value, r.areal_density_ug_cm2->standard_uncertainty));
+  if (r.emitting_atoms_per_nm2) {
+    text += fmt::format(", {} emitting atoms/nm2", value_with_uncertainty(r.emitting_atoms_per_nm2->value, r.emitting_atoms_per_nm2->standard_uncertainty));
+  }
+  return text + "\n\n" + budget_text(t.budget);
 }
 
-std::string many_results_text(const ThicknessResults& all, std::size_t pair) {
-  Rows rows = {{"spot", "emission deg", "thickness nm", "sd nm", "95 % nm", "repeatability nm", "findings"}};
+/// Rows a terminal shows before it points to --csv.
+constexpr std::size_t kMostRows = 60;
+
+std::string many_results_text(const Run& run, const ThicknessResults& all, std::size_t route) {
+  const bool tables = run.tables.size() > 1;
+  Rows rows = {{"spot", "emission deg", "thickness nm", "sd nm", "95 % nm", "repeatability nm", "ug/cm2", "findings"}};
+  if (tables) rows[0].insert(rows[0].begin(), "table");
+  std::size_t left_out = 0;
   for (const ThicknessResult& r : all.results) {
-    if (r.pair != pair) continue;
-    const std::string angle = rounded_text(r.emission_deg, 4);
-    if (!r.thickness) {
-      rows.push_back({r.spot, angle, kNone, kNone, kNone, kNone, r.failure});
+    if (r.route != route) continue;
+    if (rows.size() > kMostRows) {
+      ++left_out;
       continue;
     }
-    const Thickness& t = *r.thickness;
     std::string codes;
-    for (const Finding& f : t.findings) {
-      if (f.severity != Severity::note) codes += (codes.empty() ? "" : ", ") + f.code;
+    for (const std::uint32_t i : r.findings) {
+      const Finding& f = all.findings[i];
+      if (f.severity != Severity::note && codes.find(f.code) == std::string::npos) codes += (codes.empty() ? "" : ", ") + f.code;
     }
-    rows.push_back({r.spot, angle, rounded_text(t.value_nm, 4), rounded_text(t.standard_uncertainty_nm, 2),
-                    rounded_text(t.interval_nm.low95, 4) + " to " + rounded_text(t.interval_nm.high95, 4),
-                    rounded_text(t.budget.repeatability, 2), codes});
+    std::vector<std::string> row = {r.spot, rounded_text(r.emission_deg, 4), kNone, kNone, kNone, kNone, kNone, codes};
+    if (r.thickness) {
+      const Thickness& t = *r.thickness;
+      const double sd = r.standard_uncertainty_nm();
+      row[2] = fmt::format("{:.{}f}", t.value_nm, decimals_for(sd));
+      row[3] = rounded_text(sd, 2);
+      row[4] = interval_text(r.interval_nm(), sd);
+      row[5] = rounded_text(t.budget.repeatability, 2);
+      row[6] = rounded_text(r.areal_density_ug_cm2->value, 3);
+    } else if (r.bound) {
+      row[2] = bound_text(*r.bound);
+    } else {
+      row[7] = r.failure;
+    }
+    if (tables) row.insert(row.begin(), run.tables[r.table]);
+    rows.push_back(std::move(row));
   }
-  return detail::text_table(rows);
+  std::string text = detail::text_table(rows);
+  if (left_out > 0) text += fmt::format("  … and {} more; --csv or --json lists all\n", left_out);
+  return text;
 }
 
-std::string summary_text(const ThicknessSummary& s) {
-  if (s.count == 0) return fmt::format("no thickness from {} rows\n", s.failed);
+std::string summary_text(const ThicknessResults& all, const ThicknessSummary& s) {
+  if (s.count == 0) return fmt::format("no thickness from {} measurements ({} bounds)\n", s.failed + s.bounds, s.bounds);
   std::string text = fmt::format("mean of {}: {} nm, repeatability of the mean {} nm", s.count, rounded_text(s.mean_nm, 4),
                                  rounded_text(s.repeatability_of_mean_nm, 2));
   if (s.standard_deviation_nm) text += fmt::format(", standard deviation between results {} nm", rounded_text(*s.standard_deviation_nm, 2));
   text += fmt::format(";\nthickness scale: {} (common to all, does not average)", s.scale_stated ? rounded_text(s.scale_nm, 2) + " nm" : "not stated");
+  if (s.bounds > 0) text += fmt::format("; {} bounds", s.bounds);
   if (s.failed > 0) text += fmt::format("; {} without an answer", s.failed);
-  return text + "\n";
-}
-
-Findings all_findings(const ThicknessResults& results) {
-  Findings findings;
-  for (const ThicknessPair& pair : results.pairs) add_findings(findings, pair.findings);
-  for (const ThicknessResult& r : results.results) {
-    if (r.thickness) add_findings(findings, r.thickness->findings);
+  if (!s.outliers.empty()) {
+    text += "\noutliers:";
+    for (std::size_t k = 0; k < s.outliers.size() && k < 10; ++k) text += (k == 0 ? " " : ", ") + all.results[s.outliers[k]].spot;
+    if (s.outliers.size() > 10) text += fmt::format(" and {} more", s.outliers.size() - 10);
   }
-  return findings;
+  return text + "\n";
 }
 
 }  // namespace
@@ -135,8 +190,9 @@ std::string lengths_text(const std::vector<LengthQuery>& queries) {
     text += fmt::format("{} ({}, {} g/cm3, gap {}), electrons of {} eV\n", q.material.id, q.material.formula.text(),
                         number_text(q.material.density_g_cm3),
                         q.material.band_gap_ev ? number_text(*q.material.band_gap_ev) + " eV" : "not given", energy_text(q.energy_ev));
-    text += fmt::format("  attenuation length {} nm   ({}{})\n\n", value_with_uncertainty(l.value_nm, l.standard_uncertainty_nm),
-                        l.model, l.imfp_model.empty() ? "" : " on " + l.imfp_model);
+    text += l.model.empty() ? "  attenuation length: no model holds here\n\n"
+                            : fmt::format("  attenuation length {} nm   ({}{})\n\n", value_with_uncertainty(l.value_nm, l.standard_uncertainty_nm),
+                                          l.model, l.imfp_model.empty() ? "" : " on " + l.imfp_model);
     Rows rows = {{"kind", "model", "nm", "remark"}};
     for (const ModelValue& m : l.imfp) rows.push_back({"IMFP", m.model, optional_text(m.value_nm, 4), m.refusal});
     for (const ModelValue& m : l.models) {
@@ -151,20 +207,20 @@ std::string lengths_text(const std::vector<LengthQuery>& queries) {
 
 std::string thickness_text(const Run& run, const ThicknessResults& results) {
   std::string text = run.title.empty() ? "" : run.title + "\n\n";
-  for (std::size_t p = 0; p < results.pairs.size(); ++p) {
+  for (std::size_t p = 0; p < results.routes.size(); ++p) {
     if (p > 0) text += "\n";
-    text += pair_text(run, results.pairs[p]);
+    text += route_text(run, results.routes[p]);
     const ThicknessSummary& summary = results.summaries[p];
-    if (summary.count + summary.failed == 1) {
+    if (summary.count + summary.bounds + summary.failed == 1) {
       for (const ThicknessResult& r : results.results) {
-        if (r.pair == p) text += "\n" + one_result_text(r);
+        if (r.route == p) text += "\n" + one_result_text(r);
       }
     } else {
-      text += "\n" + many_results_text(results, p) + "\n" + summary_text(summary);
+      text += "\n" + many_results_text(run, results, p) + "\n" + summary_text(results, summary);
     }
   }
-  const Findings findings = all_findings(results);
-  if (!findings.empty()) text += "\n" + findings_text(findings);
+  const std::string findings = findings_text(distinct(results.findings));
+  if (!findings.empty()) text += "\n" + findings;
   return text + "\n" + cautions_text();
 }
 
@@ -190,7 +246,7 @@ std::string lines_text(const std::vector<CoreLevel>& levels, const PhotonSource*
       const TabulatedValue section = photoionisation_cross_section_barn(level, *source);
       section_text = optional_text(section.value, 4);
       beta_text = optional_text(asymmetry_parameter(level, *source).value, 3);
-      remark = section.refusal;
+      remark = section.reason;
     }
     if (level.outer) remark += (remark.empty() ? "" : "; ") + std::string("outer level, energy is nominal");
     rows.push_back({level.name, energy_text(level.binding_energy_ev), kinetic, section_text, beta_text, remark});
@@ -200,17 +256,16 @@ std::string lines_text(const std::vector<CoreLevel>& levels, const PhotonSource*
 
 std::string check_text(const Run& run, const ThicknessResults& results) {
   std::string text = run.title.empty() ? "" : run.title + "\n\n";
-  for (const ThicknessPair& pair : results.pairs) text += pair_text(run, pair);
+  for (const ThicknessRoute& route : results.routes) text += route_text(run, route);
   std::size_t failed = 0;
   std::string failures;
   for (const ThicknessResult& r : results.results) {
-    if (r.thickness) continue;
-    ++failed;
-    failures += fmt::format("  no thickness: {}\n", r.failure);
+    if (r.failure.empty()) continue;
+    if (++failed <= kMostRows) failures += fmt::format("  no thickness: {}\n", r.failure);
   }
-  text += fmt::format("\n{} areas, {} thicknesses can be computed, {} cannot\n{}", run.areas.size(), results.results.size() - failed, failed, failures);
-  const Findings findings = all_findings(results);
-  if (!findings.empty()) text += "\n" + findings_text(findings);
+  text += fmt::format("\n{} areas, {} thicknesses or bounds can be computed, {} cannot\n{}", run.areas.size(), results.results.size() - failed, failed, failures);
+  const std::string findings = findings_text(distinct(results.findings));
+  if (!findings.empty()) text += "\n" + findings;
   return text;
 }
 

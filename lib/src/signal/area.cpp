@@ -12,7 +12,7 @@ namespace pellicle {
 namespace {
 
 constexpr std::array kUnits = {AreaUnit::counts, AreaUnit::counts_per_s, AreaUnit::counts_ev,
-                               AreaUnit::counts_ev_per_s, AreaUnit::arbitrary};
+                               AreaUnit::counts_ev_per_s, AreaUnit::arbitrary, AreaUnit::atomic_percent};
 
 }  // namespace
 
@@ -23,6 +23,7 @@ const char* area_unit_name(AreaUnit unit) noexcept {
     case AreaUnit::counts_ev: return "counts*eV";
     case AreaUnit::counts_ev_per_s: return "counts*eV/s";
     case AreaUnit::arbitrary: return "arbitrary";
+    case AreaUnit::atomic_percent: return "atomic-percent";
   }
   return "arbitrary";
 }
@@ -46,7 +47,8 @@ std::optional<double> counts_per_area(AreaUnit unit, const CountingConditions& c
     case AreaUnit::counts_ev_per_s:
       if (c.step_ev && c.dwell_s) return *c.dwell_s / *c.step_ev;
       return std::nullopt;
-    case AreaUnit::arbitrary: break;
+    case AreaUnit::arbitrary:
+    case AreaUnit::atomic_percent: break;
   }
   return std::nullopt;
 }

@@ -139,10 +139,8 @@ ModelValue predict_attenuation_length(const Material& material, double energy_ev
   return result;
 }
 
-AttenuationLength attenuation_length(const Material& material, double energy_ev) {
-  if (!(energy_ev > 0.0) || !std::isfinite(energy_ev)) {
-    throw InputError("energy_ev", number_text(energy_ev) + " is not a kinetic energy", "expected a number > 0");
-  }
+AttenuationLength survey_lengths(const Material& material, double energy_ev) {
+  detail::check_energy(energy_ev);
   AttenuationLength length;
   for (const ImfpModel model : imfp_models()) length.imfp.push_back(predict_imfp(material, energy_ev, model));
   for (const AttenuationModel model : kModels) length.models.push_back(predict_attenuation_length(material, energy_ev, model));
@@ -167,11 +165,18 @@ AttenuationLength attenuation_length(const Material& material, double energy_ev)
     }
     break;
   }
+  if (!length.model.empty()) {
+    length.standard_uncertainty_nm = std::max(kLeastRelativeUncertainty * length.value_nm, spread_nm(length.models));
+  }
+  return length;
+}
+
+AttenuationLength attenuation_length(const Material& material, double energy_ev) {
+  AttenuationLength length = survey_lengths(material, energy_ev);
   if (length.model.empty()) {
     throw DomainError(material.id, "no attenuation-length model holds at " + energy_text(energy_ev) + " eV",
                       "give the length");
   }
-  length.standard_uncertainty_nm = std::max(kLeastRelativeUncertainty * length.value_nm, spread_nm(length.models));
   return length;
 }
 

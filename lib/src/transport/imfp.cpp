@@ -145,6 +145,7 @@ Tpp2mParameters tpp2m_parameters(double density_g_cm3, double molar_mass_g_mol, 
 }
 
 ModelValue predict_imfp(const Material& material, double energy_ev, ImfpModel model) {
+  detail::check_energy(energy_ev);
   const ModelInfo& info = model_info(model);
   Prepared prepared = prepare(material, model);
   ModelValue result{info.name, std::nullopt, prepared.refusal, info.legacy, std::move(prepared.findings)};

@@ -5,10 +5,17 @@
 #include <string>
 
 #include "base/csv.hpp"
+#include "pellicle/base/error.hpp"
 #include "pellicle/base/number.hpp"
 #include "pellicle/transport/imfp.hpp"
 
 namespace pellicle::detail {
+
+inline void check_energy(double energy_ev) {
+  if (!(energy_ev > 0.0) || !std::isfinite(energy_ev)) {
+    throw InputError("energy_ev", number_text(energy_ev) + " is not a kinetic energy", "expected a number > 0");
+  }
+}
 
 /// The reason why `energy_ev` is outside the range of a model, or empty.
 inline std::string range_refusal(const ModelInfo& info, double energy_ev) {

@@ -11,6 +11,8 @@
 #include <cstddef>
 #include <optional>
 #include <span>
+#include <string>
+#include <vector>
 
 #include "pellicle/base/finding.hpp"
 #include "pellicle/base/status.hpp"
@@ -63,6 +65,69 @@ struct Thickness {
 /// Thickness from areas; R₀ from `reference_ratio` or from both reference areas, never from a mixture.
 /// @throws as thickness_from_ratio; InputError when neither or both kinds of reference are given
 [[nodiscard]] Thickness thickness_from_areas(const AreaMeasurement& measurement);
+
+/// How a signal becomes a reduced thickness x = t/(L cosθ). With r the product of the factors:
+///
+/// | method         | r                                     | equation                              |
+/// |----------------|---------------------------------------|---------------------------------------|
+/// | ratio          | R/R₀                                  | [1 − exp(−x)] exp(ϱ x) = r            |
+/// | substrate_line | substrate area / its reference area   | x = −ln r                             |
+/// | film_line      | film area / its reference area        | x = −ln(1 − r)                        |
+/// | atomic_percent | apparent atomic fraction of C, 0 … 1  | x = −ln(1 − r)                        |
+enum class ThicknessMethod { ratio, substrate_line, film_line, atomic_percent };
+
+/// "ratio", "substrate-line", "film-line" or "atomic-percent".
+[[nodiscard]] const char* method_name(ThicknessMethod method) noexcept;
+
+/// One factor of r: quantity^power.
+struct SignalFactor {
+  std::string name;        ///< as the budget shows it
+  Quantity quantity;       ///< > 0; an area of the film may be 0
+  double power = 1.0;
+  ContributionKind kind = ContributionKind::scale;
+  bool is_area = false;    ///< an area has a normal error cut off at zero, any other factor a lognormal one
+};
+
+/// Correlation of two inputs of a measurement, by their names in the budget.
+struct NamedCorrelation {
+  std::string first, second;
+  double coefficient = 0.0;
+};
+
+/// The general measurement: any product of factors, lengths, angle, acceptance.
+struct FilmMeasurement {
+  ThicknessMethod method = ThicknessMethod::ratio;
+  std::vector<SignalFactor> factors;
+  Quantity film_line_length_nm;   ///< L_f; for the single-line methods the length of that line in the film
+  std::optional<Quantity> substrate_line_length_nm = std::nullopt;
+  Quantity emission_deg = 0.0;
+  double acceptance_half_angle_deg = 0.0;
+  bool length_given_for_angle = false;   ///< the length was determined for this very angle
+  std::vector<NamedCorrelation> correlations = {};
+};
+
+/// Names of the lengths and the angle in a budget.
+inline constexpr const char* kLengthName = "length_nm";
+inline constexpr const char* kFilmLengthName = "film_line_length_nm";
+inline constexpr const char* kSubstrateLengthName = "substrate_line_length_nm";
+inline constexpr const char* kEmissionName = "emission_deg";
+
+/// Thickness of a general measurement with its uncertainty after the GUM. The acceptance cone is averaged over
+/// before the ratio is formed; sensitivities are those of the axis, scaled by what the cone does to t.
+/// @throws InputError for a factor, length or angle outside its range
+/// @throws DomainError when r has no finite thickness (film_line with r >= 1, substrate_line with r > 1)
+/// @cite hill1976 jcgm100
+[[nodiscard]] Thickness thickness_from_factors(const FilmMeasurement& measurement);
+
+/// t of one draw of all inputs, without uncertainty; nothing where there is no finite answer. In the order of
+/// measurement_inputs(): factors, film line length, substrate line length (if any), emission angle.
+/// @param cone_factor t over what the axis alone gives, from cone_factor()
+[[nodiscard]] std::optional<double> thickness_of_draw(const FilmMeasurement& measurement, std::span<const double> inputs,
+                                                      double cone_factor) noexcept;
+
+/// What the acceptance cone does to the thickness: t with the cone over t of the axis, near 1.
+/// @throws as thickness_from_factors()
+[[nodiscard]] double cone_factor(const FilmMeasurement& measurement);
 
 /// Arrays of one size or single values that stand for all elements.
 struct RatioArrays {

@@ -23,7 +23,7 @@ namespace pellicle {
 /// What `pellicle check` says of a run that it accepts.
 [[nodiscard]] std::string check_json(const Run& run, const ThicknessResults& results);
 
-/// Thicknesses as CSV, one row per spot, angle and pair, with a header; units in the column names.
-[[nodiscard]] std::string thickness_csv(const ThicknessResults& results);
+/// Thicknesses as CSV, one row per spot, angle and route, with a header; units in the column names.
+[[nodiscard]] std::string thickness_csv(const Run& run, const ThicknessResults& results);
 
 }  // namespace pellicle

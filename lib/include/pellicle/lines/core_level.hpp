@@ -36,7 +36,7 @@ struct CoreLevel {
 /// @cite elam2002 xraydb
 [[nodiscard]] CoreLevel core_level(std::string_view name);
 
-/// All levels of an element: full doublets and their members, by falling binding energy.
+/// All levels of an element by falling binding energy, a full doublet before its members.
 [[nodiscard]] std::vector<CoreLevel> core_levels(const Element& element);
 
 /// Kinetic energy = photon energy − binding energy [eV], referred to the Fermi level.

@@ -12,7 +12,8 @@ namespace pellicle {
 /// A tabulated value, or why there is none.
 struct TabulatedValue {
   std::optional<double> value;
-  std::string refusal;  ///< reason in words when `value` is empty
+  std::string refusal;  ///< one sentence when `value` is empty
+  std::string reason;   ///< the reason alone, a few words
   std::string source;   ///< bibliography key
 };
 

@@ -1,11 +1,13 @@
 #pragma once
 /// Layers on a substrate.
 
+#include <optional>
 #include <string>
 #include <string_view>
 #include <vector>
 
 #include "pellicle/matter/material.hpp"
+#include "pellicle/uncertainty/quantity.hpp"
 
 namespace pellicle {
 
@@ -15,6 +17,7 @@ inline constexpr std::string_view kSubstrate = "substrate";
 struct Layer {
   std::string name;
   Material material;
+  std::optional<Quantity> thickness_nm = std::nullopt;  ///< where it is known
 };
 
 /// A sample: layers from the outermost to the innermost, on an infinite substrate.

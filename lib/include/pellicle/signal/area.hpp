@@ -8,9 +8,9 @@
 namespace pellicle {
 
 /// Units in which areas are tabulated.
-enum class AreaUnit { counts, counts_per_s, counts_ev, counts_ev_per_s, arbitrary };
+enum class AreaUnit { counts, counts_per_s, counts_ev, counts_ev_per_s, arbitrary, atomic_percent };
 
-/// "counts", "counts/s", "counts*eV", "counts*eV/s" or "arbitrary".
+/// "counts", "counts/s", "counts*eV", "counts*eV/s", "arbitrary" or "atomic-percent".
 [[nodiscard]] const char* area_unit_name(AreaUnit unit) noexcept;
 /// @throws InputError with the known units.
 [[nodiscard]] AreaUnit area_unit(std::string_view name);

@@ -55,6 +55,10 @@ struct AttenuationLength {
   Findings findings;
 };
 
+/// Every model at once, also where none of them gives an attenuation length: `model` is then empty and `value_nm` 0.
+/// @throws InputError for an energy that is not a number > 0
+[[nodiscard]] AttenuationLength survey_lengths(const Material& material, double energy_ev);
+
 /// Predicted attenuation length of electrons of `energy_ev` in `material`.
 /// @param energy_ev kinetic energy [eV], > 0
 /// @throws InputError for an energy that is not a number > 0

@@ -1,0 +1,33 @@
+#pragma once
+/// The reference of a route: what an infinitely thick layer would give, as factors of r.
+
+#include "pellicle/job/thickness_job.hpp"
+
+namespace pellicle::detail {
+
+/// How the lines of a run state what they would give for a thick layer.
+enum class LineScale { none, reference_area, sensitivity };
+
+/// The one scale of all lines that no [[reference]] covers.
+/// @throws InputError for a mixture, listing which line has which
+[[nodiscard]] LineScale line_scale(const Run& run);
+
+/// Adds R₀ of a film line and a substrate line to a route: factors, correlations, origin, findings.
+/// @param reference the stated one, or nullptr: from the scale of the lines
+void add_reference_ratio(const Run& run, const ReferenceRatio* reference, const Line& film, const Line& substrate,
+                         ThicknessRoute& route);
+
+/// Adds the reference area of a single line. @throws InputError when it has none
+void add_reference_area(const Run& run, const Line& line, ThicknessRoute& route);
+
+/// Signal of an infinitely thick layer of a line's material, up to a constant common to all lines: factors with
+/// power +1. @param from_sensitivity true: S of the line; false: computed from cross section and asymmetry
+/// @param shared_line the other line of the pair is the same line, so whatever depends on level and energy alone
+///        (cross section, asymmetry, transmission) cancels and is neither used nor asked for
+[[nodiscard]] std::vector<SignalFactor> thick_signal(const Run& run, const Line& line, bool from_sensitivity, bool shared_line,
+                                                     std::vector<std::string>& applied, Findings& findings);
+
+/// The one value of a product of factors and its standard uncertainty without correlations.
+[[nodiscard]] Quantity product(const std::vector<SignalFactor>& factors);
+
+}  // namespace pellicle::detail

@@ -1,0 +1,12 @@
+#pragma once
+
+#include "pellicle/job/thickness_job.hpp"
+
+namespace pellicle::detail {
+
+/// Monte Carlo of one measurement: areas normal and cut off at zero, the angle normal, everything else lognormal.
+/// @param gum what the GUM says, for the comparison
+[[nodiscard]] MonteCarloThickness thickness_by_monte_carlo(const FilmMeasurement& measurement, const Thickness& gum,
+                                                           const UncertaintyOptions& options, std::uint64_t stream);
+
+}  // namespace pellicle::detail

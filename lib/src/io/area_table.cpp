@@ -171,11 +171,6 @@ void read_area(const Cells& cells, const std::string& cell, const std::string& n
   const std::optional<double> area = cells.number_in(cell, name);
   if (!area) throw cells.error(name, "the cell is empty", "expected the fitted area, or nd for not detected");
   row.area = *area == 0.0 ? 0.0 : *area;  // −0 is 0
-  const double allowed = -3.0 * row.area_sd.value_or(0.0);
-  if (*row.area < allowed) {
-    throw cells.error(name, number_text(*row.area) + " is a negative area" + (row.area_sd ? ", more than 3 area_sd below zero" : ""),
-                      "a net area is >= 0 within 3 area_sd; check the background");
-  }
 }
 
 void read_rows(const Cells& cells, const Header& header, const AreaTableOptions& options, std::vector<AreaRow>& rows) {

@@ -20,7 +20,8 @@ struct ComponentArea {
   std::string problem;  ///< why it cannot be used
 };
 
-ComponentArea component_area(const AreaRow& row, AreaUnit unit) {
+ComponentArea component_area(const Run& run, const AreaRow& row) {
+  const AreaUnit unit = run.area_unit;
   ComponentArea c;
   c.area.value = row.area.value_or(0.0);
   c.area.not_detected_stated = !row.area.has_value();
@@ -43,6 +44,11 @@ ComponentArea component_area(const AreaRow& row, AreaUnit unit) {
   } else {
     c.area.sd = assumed_value("area_relative_sd") * std::abs(*row.area);
     c.area.sd_assumed = true;
+  }
+  // A background-subtracted area may fall below zero by its noise, not by more.
+  if (row.area && *row.area < 0.0 && (c.area.sd_assumed || *row.area < -3.0 * c.area.sd)) {
+    throw InputError(run.place_of(row) + ": area", number_text(*row.area) + " is a negative area" + (c.area.sd_assumed ? "" : ", more than 3 standard uncertainties below zero"),
+                     "a net area is >= 0 within 3 standard uncertainties; check the background");
   }
   return c;
 }
@@ -166,7 +172,7 @@ std::vector<Measurement> collect_measurements(const Run& run) {
           break;
         }
         parts.push_back(&part);
-        areas.push_back(component_area(*row, run.area_unit));
+        areas.push_back(component_area(run, *row));
         if (!areas.back().problem.empty()) {
           m.missing[l] = "spot \"" + m.spot + "\": " + areas.back().problem;
           break;

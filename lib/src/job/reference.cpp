@@ -227,6 +227,15 @@ Quantity product(const std::vector<SignalFactor>& factors) {
   return {value, std::abs(value) * std::sqrt(variance)};
 }
 
+Quantity with_assumed_sensitivity(Quantity s, Findings& findings) {
+  if (s.standard_uncertainty) return s;
+  const double sd = assumed_value("sensitivity_relative_sd");
+  s.standard_uncertainty = sd * s.value;
+  add_finding(findings, {"assumed", Severity::warning,
+                         "the uncertainty of the sensitivities is assumed to be " + rounded_text(100.0 * sd, 2) + " % (common practice, no source)", sd});
+  return s;
+}
+
 LineScale line_scale(const Run& run) {
   std::string areas, sensitivities, none;
   const auto list = [](std::string& text, const Line& line) { text += (text.empty() ? "\"" : ", \"") + line.label + "\""; };
@@ -265,14 +274,7 @@ std::vector<SignalFactor> thick_signal(const Run& run, const Line& line, bool fr
   }
   std::vector<SignalFactor> factors;
   if (from_sensitivity) {
-    Quantity s = *line.sensitivity;
-    if (!s.standard_uncertainty) {
-      const double sd = assumed_value("sensitivity_relative_sd");
-      s.standard_uncertainty = sd * s.value;
-      add_finding(findings, {"assumed", Severity::warning,
-                             "the uncertainty of the sensitivities is assumed to be " + rounded_text(100.0 * sd, 2) + " % (common practice, no source)", sd});
-    }
-    factors.push_back({tag("sensitivity", line), s, 1.0, ContributionKind::scale});
+    factors.push_back({tag("sensitivity", line), with_assumed_sensitivity(*line.sensitivity, findings), 1.0, ContributionKind::scale});
     applied.push_back(std::string(sensitivity_kind_name(run.sensitivity_kind)) + " sensitivity");
     add_matrix_factors(run, line, shared_line, factors, applied);
     if (run.sensitivity_includes_transmission && run.transmission_corrected) {

@@ -27,6 +27,9 @@ void add_reference_area(const Run& run, const Line& line, ThicknessRoute& route)
 [[nodiscard]] std::vector<SignalFactor> thick_signal(const Run& run, const Line& line, bool from_sensitivity, bool shared_line,
                                                      std::vector<std::string>& applied, Findings& findings);
 
+/// A sensitivity with its uncertainty: the stated one, or the assumed one with its finding.
+[[nodiscard]] Quantity with_assumed_sensitivity(Quantity sensitivity, Findings& findings);
+
 /// The one value of a product of factors and its standard uncertainty without correlations.
 [[nodiscard]] Quantity product(const std::vector<SignalFactor>& factors);
 

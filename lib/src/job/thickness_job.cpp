@@ -78,7 +78,8 @@ OtherLines other_lines(const Run& run, const ThicknessRoute& route, const Measur
     if (l == *route.film_line || !m.lines[l]) continue;
     const double s = run.lines[l].sensitivity ? run.lines[l].sensitivity->value : 1.0;
     const double amount = m.lines[l]->value / s;
-    const double relative = run.lines[l].sensitivity ? run.lines[l].sensitivity->standard_uncertainty.value_or(assumed_value("sensitivity_relative_sd") * s) / s : 0.0;
+    Findings already_noted;
+    const double relative = run.lines[l].sensitivity ? detail::with_assumed_sensitivity(*run.lines[l].sensitivity, already_noted).sd() / s : 0.0;
     sum.amount.value += amount;
     variance += std::pow(m.lines[l]->sd / s, 2) + std::pow(relative * amount, 2);
     sum.amount_and_length.emplace_back(amount, organic_attenuation_length_nm(run.lines[l].kinetic_energy_ev));
@@ -277,7 +278,9 @@ Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_inde
         e.result.failure = "spot \"" + m.spot + "\" has no other line to compare the contamination with";
         return e;
       }
-      if (const auto& s = run.lines[*route.film_line].sensitivity) general.factors.push_back({"sensitivity", *s, -1.0, ContributionKind::scale});
+      if (const auto& s = run.lines[*route.film_line].sensitivity) {
+        general.factors.push_back({"sensitivity", detail::with_assumed_sensitivity(*s, e.findings), -1.0, ContributionKind::scale});
+      }
       general.factors.push_back({"other_lines", others.amount, -1.0, ContributionKind::repeatability, true});
       general.substrate_line_length_nm = settle_common_length(general, others);
     }

@@ -15,7 +15,7 @@ std::size_t width_of(const std::string& text) {
 constexpr std::size_t kRemarkWidth = 70;
 
 bool looks_numeric(const std::string& cell) {
-  return cell.empty() || cell.find_first_of("0123456789+-") == 0 || cell.starts_with("–");
+  return cell.empty() || cell.find_first_of("0123456789+-") == 0 || cell.starts_with("–") || cell.starts_with("<= ") || cell.starts_with(">= ");
 }
 
 }  // namespace

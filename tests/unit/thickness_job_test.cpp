@@ -188,7 +188,8 @@ TEST_CASE("areas come with stated or counted or assumed uncertainty in this orde
 TEST_CASE("an angle without uncertainty is assumed to be set to one degree") {
   Run run = silica_run();
   const auto contribution = [&] {
-    for (const BudgetRow& row : only(run_thickness(run)).budget.rows) {
+    const ThicknessResults all = run_thickness(run);
+    for (const BudgetRow& row : only(all).budget.rows) {
       if (row.name == "emission_deg") return row.contribution;
     }
     return -1.0;

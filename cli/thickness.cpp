@@ -95,11 +95,11 @@ pellicle::Run run_from_options(const Options& o) {
   }
   if (stated == 0 && !(film.reference_area && substrate.reference_area)) {
     throw InputError("--reference-ratio", "no reference ratio is given",
-                     "give --reference-ratio, both reference areas, --reference-table or --reference-computed");
+                     "give --reference-ratio, or both --reference-film-area and --reference-substrate-area, or --reference-table, or --reference-computed");
   }
   run.lines = {film, substrate};
   if (ratio || computed || !o.reference_table.empty()) {
-    ReferenceRatio reference{"film", std::string(kSubstrate), ReferenceOrigin::given, ratio.value_or(0.0), o.reference_table};
+    ReferenceRatio reference{"film", std::string(kSubstrate), ratio.value_or(Quantity(0.0)), ReferenceOrigin::given, o.reference_table};
     if (computed) reference.origin = ReferenceOrigin::computed;
     if (!o.reference_table.empty()) reference.origin = ReferenceOrigin::table;
     run.references.push_back(std::move(reference));

@@ -13,6 +13,7 @@ namespace pellicle::test {
 inline Line line(const Run& run, const std::string& label, std::string_view level, const std::string& from) {
   Line l;
   l.label = label;
+  l.components = {{label, 1.0}};
   l.level = core_level(level);
   l.kinetic_energy_ev = kinetic_energy_ev(*l.level, run.source);
   l.from = from;
@@ -24,7 +25,6 @@ inline AreaRow area(const std::string& spot, const std::string& label, double va
   row.spot = spot;
   row.line = label;
   row.area = value;
-  row.place = "areas.csv:" + spot + ":" + label;
   return row;
 }
 
@@ -32,6 +32,8 @@ inline AreaRow area(const std::string& spot, const std::string& label, double va
 inline Run silica_run() {
   Run run;
   run.place = "run.toml";
+  run.tables = {"areas.csv"};
+  run.uncertainty.method = IntervalMethod::gum;
   run.source = photon_source("Al Ka");
   run.emission_deg = 34.0;
   run.sample.layers.push_back({"oxide", catalogue_material("SiO2")});

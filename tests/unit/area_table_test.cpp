@@ -27,7 +27,7 @@ TEST_CASE("every column arrives where it belongs in any order") {
   CHECK(r.counting.background_counts == 120.0);
   CHECK(r.counting.dwell_s == 2.5);
   CHECK(r.counting.step_ev == 0.1);
-  CHECK(r.place == "t.csv:2");
+  CHECK(r.line_number == 2);
 }
 
 TEST_CASE("line and area are enough") {
@@ -38,7 +38,7 @@ TEST_CASE("line and area are enough") {
   CHECK_FALSE(rows[0].area_sd.has_value());
   CHECK_FALSE(rows[0].counting.dwell_s.has_value());
   CHECK(rows[1].area == 0.0);
-  CHECK(rows[1].place == "t.csv:4");
+  CHECK(rows[1].line_number == 4);
 }
 
 TEST_CASE("a take-off angle becomes an emission angle and an empty cell the angle of the run") {
@@ -50,7 +50,7 @@ TEST_CASE("a take-off angle becomes an emission angle and an empty cell the angl
 TEST_CASE("an area below zero within three of its uncertainties is data") {
   const auto rows = read_area_table("line,area,area_sd\na,-29.9,10\na,-0,\n", "t.csv");
   CHECK(rows[0].area == -29.9);
-  CHECK_FALSE(std::signbit(rows[1].area));
+  CHECK_FALSE(std::signbit(*rows[1].area));
 }
 
 TEST_CASE("every fault of a table is named with file and line and column") {
@@ -64,8 +64,6 @@ TEST_CASE("every fault of a table is named with file and line and column") {
       {head + "1,0,a,,,,,\n", "t.csv:2: area", "empty"},
       {head + "1,0,a,nan,,,,\n", "t.csv:2: area", "not a number"},
       {head + "1,0,a,inf,,,,\n", "t.csv:2: area", "not a number"},
-      {head + "1,0,a,-1,,,,\n", "t.csv:2: area", "negative"},
-      {head + "1,0,a,-31,10,,,\n", "t.csv:2: area", "more than 3 area_sd below zero"},
       {head + "1,0,,1,,,,\n", "t.csv:2: line", "empty"},
       {head + "1,x,a,1,,,,\n", "t.csv:2: emission_deg", "\"x\" is not a number"},
       {head + "1,90,a,1,,,,\n", "t.csv:2: emission_deg", "not an emission angle"},

@@ -223,7 +223,7 @@ TEST_CASE("a check document says what can be computed") {
   CHECK(r.at("areas") == 3);
   CHECK(r.at("results") == 2);
   CHECK(r.at("failures").at(0).at("spot") == "2");
-  CHECK(r.at("pairs").size() == 1);
+  CHECK(r.at("routes").size() == 1);
   CHECK(Json::parse(check_json(silica_run(), run_thickness(silica_run()))).at("results").at(0).at("ok") == true);
 }
 
@@ -236,19 +236,19 @@ TEST_CASE("a CSV of results has one row per result and units in its header") {
   for (AreaRow& row : run.areas) row.spot = "left, \"upper\"";
   run.areas.push_back(area("2", "Si 2p oxide", 5.0));
   std::vector<std::vector<std::string>> rows;
-  detail::read_csv(thickness_csv(run_thickness(run)), "t",
+  detail::read_csv(thickness_csv(run, run_thickness(run)), "t",
                    [&](const detail::CsvRow& row) { rows.emplace_back(row.fields.begin(), row.fields.end()); });
   REQUIRE(rows.size() == 3);
-  CHECK(rows[0] == std::vector<std::string>{"spot", "emission_deg", "layer", "film_line", "substrate_line",
-                                            "thickness_nm", "sd_nm", "low95_nm", "high95_nm", "repeatability_nm",
-                                            "scale_nm", "findings", "failure"});
-  for (const auto& row : rows) CHECK(row.size() == 13);
+  CHECK(rows[0] == std::vector<std::string>{"spot", "emission_deg", "layer", "method", "film_line", "substrate_line",
+                                            "thickness_nm", "sd_nm", "low95_nm", "high95_nm", "bound", "repeatability_nm",
+                                            "scale_nm", "areal_density_ug_cm2", "findings", "failure"});
+  for (const auto& row : rows) CHECK(row.size() == 16);
   CHECK(rows[1][0] == "left, \"upper\"");
-  CHECK(close_to(std::stod(rows[1][5]), 3.27429, test::abs(5e-6)));
-  CHECK(rows[1][10].empty());  // the scale is not stated
-  CHECK(contains(rows[1][11], "scale_not_stated"));
-  CHECK(rows[2][5].empty());
-  CHECK(contains(rows[2][12], "no area"));
+  CHECK(close_to(std::stod(rows[1][6]), 3.27429, test::abs(5e-6)));
+  CHECK(rows[1][12].empty());  // the scale is not stated
+  CHECK(contains(rows[1][14], "scale_not_stated"));
+  CHECK(rows[2][6].empty());
+  CHECK(contains(rows[2][15], "no area"));
 }
 
 TEST_CASE("a report states value and uncertainty and both angles and densities and cautions") {

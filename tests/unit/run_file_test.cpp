@@ -115,7 +115,7 @@ TEST_CASE("every key of a run arrives where it belongs") {
   CHECK(run.area_unit == AreaUnit::counts);
   REQUIRE(run.areas.size() == 2);
   CHECK(run.areas[1].area == 10000.0);
-  CHECK(run.areas[1].place == folder.file("areas.csv") + ":3");
+  CHECK(run.place_of(run.areas[1]) == folder.file("areas.csv") + ":3");
 }
 
 TEST_CASE("the same things may be said in other ways") {
@@ -184,11 +184,11 @@ TEST_CASE("every fault of a run is named with file and line and column and key")
       {"{ value = 0.9329, sd = 0.01 }", "\"0.9329\"", "\"0.9329\"", "reference[1].ratio", "text"},
       // values out of range
       {"source = \"Al Ka\"", "source = \"Zz Ka\"", "\"Zz Ka\"", "instrument.source", "unknown photon source"},
-      {"source = \"Al Ka\"", "photon_energy_ev = 5", "5\n", "instrument.photon_energy_ev: photon_energy_ev",
+      {"source = \"Al Ka\"", "photon_energy_ev = 5", "5\n", "instrument.photon_energy_ev",
        "out of range"},
-      {"emission_deg = 34.0", "emission_deg = 95", "95", "instrument.emission_deg: emission_deg",
+      {"emission_deg = 34.0", "emission_deg = 95", "95", "instrument.emission_deg",
        "not an emission angle"},
-      {"emission_deg = 34.0", "takeoff_deg = 0", "0\nemission_sd", "instrument.takeoff_deg: takeoff_deg",
+      {"emission_deg = 34.0", "takeoff_deg = 0", "0\nemission_sd", "instrument.takeoff_deg",
        "not a take-off angle"},
       {"emission_sd_deg = 0.5", "emission_sd_deg = -0.5", "-0.5", "instrument.emission_sd_deg", "negative"},
       {"value = 3.448, relative_sd = 0.05", "value = 0", "{ value = 0 }", "line[1].length_nm.oxide", "not a length"},

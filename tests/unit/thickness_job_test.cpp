@@ -26,6 +26,7 @@ namespace {
 Run hafnia_run() {
   Run run;
   run.place = "run.toml";
+  run.uncertainty.method = IntervalMethod::gum;
   run.source = photon_source("Al Ka");
   run.emission_deg = 0.0;
   run.emission_sd_deg = 1.0;
@@ -57,11 +58,11 @@ TEST_SUITE("thickness of a run") {
 TEST_CASE("the run of the worked example gives 3.27429 nm") {
   const ThicknessResults all = run_thickness(silica_run());
   CHECK(close_to(only(all).value_nm, 3.27429, test::abs(5e-6)));  // seah2004, recalled
-  REQUIRE(all.pairs.size() == 1);
-  CHECK(all.pairs[0].layer == "oxide");
-  CHECK(all.pairs[0].film_length.origin == "given");
-  CHECK(all.pairs[0].reference_origin == "given");
-  CHECK_FALSE(all.pairs[0].substrate_length.has_value());
+  REQUIRE(all.routes.size() == 1);
+  CHECK(all.routes[0].layer == "oxide");
+  CHECK(all.routes[0].film_length.origin == "given");
+  CHECK(all.routes[0].reference_origin == "given");
+  CHECK_FALSE(all.routes[0].substrate_length.has_value());
   CHECK(all.results[0].emission_deg == 34.0);
 }
 
@@ -82,9 +83,9 @@ TEST_CASE("a calibrated set gives its own length and no other") {
     run.lines[1].length_nm.clear();
     run.length_set = set;
     const ThicknessResults all = run_thickness(run);
-    CHECK(all.pairs[0].film_length.length_nm.value == length);
-    CHECK(all.pairs[0].film_length.origin == std::string("set ") + set);
-    CHECK(has_finding(only(all).findings, "length_from_memory"));
+    CHECK(all.routes[0].film_length.length_nm.value == length);
+    CHECK(all.routes[0].film_length.origin == std::string("set ") + set);
+    CHECK(has_finding(all.findings_of(all.results[0]), "length_from_memory"));
     CHECK(close_to(only(all).value_nm, length * std::cos(34.0 * std::acos(-1.0) / 180.0) * std::log1p(2.0 / 0.9329),
                    rel(1e-13)));
   }
@@ -96,7 +97,7 @@ TEST_CASE("a calibrated set gives its own length and no other") {
   CHECK(contains(error_of<InputError>([&] { (void)run_thickness(run); }).fact(), "Ag La"));
   // A length given outright goes before the set.
   run.lines[1].length_nm["oxide"] = 5.0;
-  CHECK(run_thickness(run).pairs[0].film_length.length_nm.value == 5.0);
+  CHECK(run_thickness(run).routes[0].film_length.length_nm.value == 5.0);
 }
 
 TEST_CASE("without a length it is predicted and the prediction brings its uncertainty") {
@@ -104,10 +105,10 @@ TEST_CASE("without a length it is predicted and the prediction brings its uncert
   run.lines[1].length_nm.clear();
   const ThicknessResults all = run_thickness(run);
   const AttenuationLength predicted = attenuation_length(catalogue_material("SiO2"), 1387.2);
-  CHECK(close_to(all.pairs[0].film_length.length_nm.value, predicted.value_nm, rel(1e-12)));
-  CHECK(close_to(all.pairs[0].film_length.length_nm.sd(), predicted.standard_uncertainty_nm, rel(1e-12)));
-  CHECK(all.pairs[0].film_length.origin == "predicted: Seah-Gilmore on TPP-2M");
-  CHECK(has_finding(only(all).findings, "length_predicted"));
+  CHECK(close_to(all.routes[0].film_length.length_nm.value, predicted.value_nm, rel(1e-12)));
+  CHECK(close_to(all.routes[0].film_length.length_nm.sd(), predicted.standard_uncertainty_nm, rel(1e-12)));
+  CHECK(all.routes[0].film_length.origin == "predicted: Seah-Gilmore on TPP-2M");
+  CHECK(has_finding(all.findings_of(all.results[0]), "length_predicted"));
   CHECK(only(all).scale_stated);
 }
 
@@ -143,11 +144,11 @@ TEST_CASE("contamination above the film matters for lines of different energy on
   Run silica = silica_run();
   silica.sample.layers.insert(silica.sample.layers.begin(), {"contamination", catalogue_material("hydrocarbon")});
   CHECK(close_to(only(run_thickness(silica)).value_nm, 3.27429, test::abs(5e-6)));
-  CHECK_FALSE(has_finding(only(run_thickness(silica)).findings, "contamination_uncorrected"));
+  CHECK_FALSE(has_finding(run_thickness(silica).findings, "contamination_uncorrected"));
   Run hafnia = hafnia_run();
-  CHECK_FALSE(has_finding(only(run_thickness(hafnia)).findings, "contamination_uncorrected"));
+  CHECK_FALSE(has_finding(run_thickness(hafnia).findings, "contamination_uncorrected"));
   hafnia.sample.layers.insert(hafnia.sample.layers.begin(), {"contamination", catalogue_material("hydrocarbon")});
-  CHECK(has_finding(only(run_thickness(hafnia)).findings, "contamination_uncorrected"));
+  CHECK(has_finding(run_thickness(hafnia).findings, "contamination_uncorrected"));
 }
 
 TEST_CASE("reference areas make a reference ratio with the uncertainty of both") {
@@ -157,29 +158,29 @@ TEST_CASE("reference areas make a reference ratio with the uncertainty of both")
   run.lines[1].reference_area = Quantity(10000.0, 200.0);
   const ThicknessResults all = run_thickness(run);
   CHECK(close_to(only(all).value_nm, 3.27429, test::abs(5e-6)));
-  CHECK(all.pairs[0].reference_origin == "reference areas");
-  CHECK(close_to(all.pairs[0].reference_ratio.value, 0.9329, rel(1e-14)));
-  CHECK(close_to(all.pairs[0].reference_ratio.sd(), 0.9329 * std::hypot(0.01, 0.02), rel(1e-12)));
+  CHECK(all.routes[0].reference_origin == "reference areas");
+  CHECK(close_to(all.routes[0].reference_ratio->value, 0.9329, rel(1e-14)));
+  CHECK(close_to(all.routes[0].reference_ratio->sd(), 0.9329 * std::hypot(0.01, 0.02), rel(1e-12)));
   // A stated ratio overrides the areas of its pair.
   run.references = {{"Si 2p oxide", "Si 2p metal", 2.0}};
   const ThicknessResults stated = run_thickness(run);
-  REQUIRE(stated.pairs.size() == 1);
-  CHECK(stated.pairs[0].reference_ratio.value == 2.0);
+  REQUIRE(stated.routes.size() == 1);
+  CHECK(stated.routes[0].reference_ratio->value == 2.0);
 }
 
 TEST_CASE("areas come with stated or counted or assumed uncertainty in this order") {
   Run run = silica_run();
-  const auto sd = [&] { return run_thickness(run).results[0].film_area.sd(); };
+  const auto sd = [&] { return run_thickness(run).results[0].film_area->sd(); };
   // Assumed: 2 % of the area, common practice, no source.
   CHECK(close_to(sd(), 400.0, rel(1e-14)));
-  CHECK(has_finding(only(run_thickness(run)).findings, "assumed"));
+  CHECK(has_finding(run_thickness(run).findings, "assumed"));
   // Counted: the root of the counts and twice the background [currie1968].
   run.area_unit = AreaUnit::counts;
   CHECK(close_to(sd(), std::sqrt(20000.0), rel(1e-14)));
-  CHECK(has_finding(only(run_thickness(run)).findings, "background_not_given"));
+  CHECK(has_finding(run_thickness(run).findings, "background_not_given"));
   for (AreaRow& row : run.areas) row.counting.background_counts = 5000.0;
   CHECK(close_to(sd(), std::sqrt(30000.0), rel(1e-14)));
-  CHECK_FALSE(has_finding(only(run_thickness(run)).findings, "background_not_given"));
+  CHECK_FALSE(has_finding(run_thickness(run).findings, "background_not_given"));
   // Stated.
   run.areas[0].area_sd = 77.0;
   CHECK(sd() == 77.0);
@@ -197,7 +198,7 @@ TEST_CASE("an angle without uncertainty is assumed to be set to one degree") {
   // t tanθ per radian.
   const double slope = 3.27429 * std::tan(34.0 * std::acos(-1.0) / 180.0) * std::acos(-1.0) / 180.0;
   CHECK(close_to(contribution(), slope, rel(1e-5)));
-  CHECK(has_finding(only(run_thickness(run)).findings, "assumed"));
+  CHECK(has_finding(run_thickness(run).findings, "assumed"));
   run.emission_sd_deg = 0.25;
   CHECK(close_to(contribution(), 0.25 * slope, rel(1e-5)));
 }
@@ -248,12 +249,39 @@ TEST_CASE("runs that cannot be a film on a substrate are refused with the reason
 }
 
 TEST_CASE("rows of the table that fit no run are refused at their place") {
-  const auto error = refused([](Run& r) { r.areas.push_back(area("2", "Si 2p metl", 1.0)); });
-  CHECK(error.where() == "areas.csv:2:Si 2p metl");
+  const auto error = refused([](Run& r) {
+    r.areas.push_back(area("2", "Si 2p metl", 1.0));
+    r.areas.back().line_number = 4;
+  });
+  CHECK(error.where() == "areas.csv:4");
   CHECK(contains(error.hint(), "Si 2p metal"));
   CHECK(contains(refused([](Run& r) { r.emission_deg.reset(); }).fact(), "no emission angle"));
   CHECK(contains(refused([](Run& r) { r.areas.push_back(r.areas[0]); }).fact(), "twice"));
   CHECK(contains(refused([](Run& r) { r.areas.clear(); }).fact(), "no areas"));
+}
+
+TEST_CASE("a net area below zero is data within three standard uncertainties and a fault beyond") {
+  const auto spoil = [](Run& r, double value, std::optional<double> sd, std::optional<double> background) {
+    r.areas[0].area = value;
+    r.areas[0].area_sd = sd;
+    r.areas[0].counting.background_counts = background;
+    r.areas[0].line_number = 7;
+    if (background) r.area_unit = AreaUnit::counts;
+  };
+  const auto error = refused([&](Run& r) { spoil(r, -31.0, 10.0, std::nullopt); });
+  CHECK(error.where() == "areas.csv:7: area");
+  CHECK(contains(error.fact(), "more than 3"));
+  CHECK(contains(refused([&](Run& r) { spoil(r, -1.0, std::nullopt, std::nullopt); }).fact(), "negative area"));
+  // Background 50 counts: the noise of nothing is 10 counts.
+  CHECK(contains(refused([&](Run& r) { spoil(r, -31.0, std::nullopt, 50.0); }).fact(), "more than 3"));
+  for (const auto& [sd, background] : {std::pair<std::optional<double>, std::optional<double>>{10.0, std::nullopt}, {std::nullopt, 50.0}}) {
+    Run run = silica_run();
+    spoil(run, -29.0, sd, background);
+    const ThicknessResults all = run_thickness(run);
+    REQUIRE(all.results[0].bound.has_value());
+    CHECK(all.results[0].bound->upper);
+    CHECK(all.results[0].bound->at95_nm > 0.0);
+  }
 }
 
 TEST_CASE("a spot without an answer fails alone and says why") {
@@ -262,17 +290,18 @@ TEST_CASE("a spot without an answer fails alone and says why") {
   run.areas.push_back(area("3", "Si 2p oxide", 100.0));
   run.areas.push_back(area("3", "Si 2p metal", 0.0));  // nothing under it
   run.areas.push_back(area("4", "Si 2p oxide", 0.0));
-  run.areas.push_back(area("4", "Si 2p metal", 100.0));  // no oxide: zero, not a failure
+  run.areas.push_back(area("4", "Si 2p metal", 100.0));  // no oxide
   const ThicknessResults all = run_thickness(run);
   REQUIRE(all.results.size() == 4);
   CHECK(all.results[0].thickness.has_value());
   CHECK_FALSE(all.results[1].thickness.has_value());
   CHECK(contains(all.results[1].failure, "no area of line \"Si 2p metal\""));
   CHECK_FALSE(all.results[2].thickness.has_value());
-  CHECK(contains(all.results[2].failure, "lower bound"));
-  CHECK(all.results[3].thickness->value_nm == 0.0);
-  CHECK(all.summaries[0].count == 2);
-  CHECK(all.summaries[0].failed == 2);
+  // A zero without a noise bounds nothing: how weak might the line be?
+  CHECK(contains(all.results[2].failure, "neither area_sd nor background_counts"));
+  CHECK(contains(all.results[3].failure, "neither area_sd nor background_counts"));
+  CHECK(all.summaries[0].count == 1);
+  CHECK(all.summaries[0].failed == 3);
 }
 
 TEST_CASE("spots and angles are kept apart in the order in which they appear") {
@@ -337,7 +366,7 @@ TEST_CASE("one spot has no standard deviation and an unstated length no scale") 
   CHECK_FALSE(all.summaries[0].scale_stated);
 }
 
-TEST_CASE("two films of one run give two pairs") {
+TEST_CASE("two films of one run give two routes") {
   Run run = hafnia_run();
   Line hf4d = line(run, "Hf 4d", "Hf 4d", "hafnia");
   run.lines.push_back(hf4d);
@@ -346,10 +375,10 @@ TEST_CASE("two films of one run give two pairs") {
   row.area_sd = 80.0;
   run.areas.push_back(row);
   const ThicknessResults all = run_thickness(run);
-  REQUIRE(all.pairs.size() == 2);
+  REQUIRE(all.routes.size() == 2);
   REQUIRE(all.results.size() == 2);
-  CHECK(all.results[0].pair == 0);
-  CHECK(all.results[1].pair == 1);
+  CHECK(all.results[0].route == 0);
+  CHECK(all.results[1].route == 1);
   CHECK(all.summaries.size() == 2);
 }
 
@@ -358,7 +387,7 @@ TEST_CASE("a line known by its kinetic energy alone needs no level") {
   run.lines[0].level.reset();
   run.lines[0].kinetic_energy_ev = 1600.0;
   CHECK_NOTHROW((void)run_thickness(run));
-  CHECK(close_to(run_thickness(run).pairs[0].film_length.length_nm.value,
+  CHECK(close_to(run_thickness(run).routes[0].film_length.length_nm.value,
                  attenuation_length(catalogue_material("hfo2"), 1600.0).value_nm, rel(1e-14)));
 }
 

@@ -28,14 +28,8 @@ std::size_t edit_distance(std::string_view a, std::string_view b) {
 
 std::string nearest_name(std::string_view word, std::span<const std::string> known) {
   if (word.size() > 64) return {};
-  // A longer or shorter form of a known name is meant before any name of like spelling.
-  constexpr std::size_t kFewest = 3;
-  for (const std::string& name : known) {
-    const std::size_t common = std::min(name.size(), word.size());
-    if (common >= kFewest && name.size() != word.size() && edit_distance(word.substr(0, common), std::string_view(name).substr(0, common)) == 0) return name;
-  }
   std::string best;
-  std::size_t best_distance = std::max<std::size_t>(2, word.size() / 3) + 1;
+  std::size_t best_distance = word.size() + 1;
   for (const std::string& name : known) {
     const std::size_t distance = edit_distance(word, name);
     if (distance < best_distance) {
@@ -43,7 +37,17 @@ std::string nearest_name(std::string_view word, std::span<const std::string> kno
       best = name;
     }
   }
-  return best;
+  // One or two slips first; then a longer or shorter form of a known name; then names of like spelling.
+  if (best_distance <= 2 && best_distance < word.size()) return best;
+  constexpr std::size_t kFewest = 3;
+  std::string form;
+  for (const std::string& name : known) {
+    const std::size_t common = std::min(name.size(), word.size());
+    if (common < kFewest || edit_distance(word.substr(0, common), std::string_view(name).substr(0, common)) != 0) continue;
+    if (form.empty() || common > std::min(form.size(), word.size())) form = name;
+  }
+  if (!form.empty()) return form;
+  return best_distance <= std::max<std::size_t>(2, word.size() / 3) ? best : std::string();
 }
 
 std::string join_names(std::span<const std::string> names) {

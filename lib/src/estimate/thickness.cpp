@@ -85,9 +85,20 @@ double cone_signal(ThicknessMethod method, double thickness_nm, double film_leng
   return method == ThicknessMethod::substrate_line ? substrate : film;
 }
 
+/// r times value^power, exact for the powers that occur.
+void apply(double& r, double value, double power) {
+  if (power == 1.0) {
+    r *= value;
+  } else if (power == -1.0) {
+    r /= value;
+  } else {
+    r *= std::pow(value, power);
+  }
+}
+
 double product_of(const FilmMeasurement& m) {
   double r = 1.0;
-  for (const SignalFactor& f : m.factors) r *= f.power == 1.0 ? f.quantity.value : f.power == -1.0 ? 1.0 / f.quantity.value : std::pow(f.quantity.value, f.power);
+  for (const SignalFactor& f : m.factors) apply(r, f.quantity.value, f.power);
   return r;
 }
 
@@ -111,8 +122,12 @@ void check_correlation(double coefficient) {
 }
 
 void check_measurement(const FilmMeasurement& m) {
-  for (const SignalFactor& f : m.factors) check_quantity(f.name, f.quantity, f.is_area && f.power > 0.0);
-  check_quantity(film_length_name(m), m.film_line_length_nm, false);
+  for (const SignalFactor& f : m.factors) {
+    // Only what was measured may be nothing; a reference may not, nor the substrate's line where it stands alone.
+    const bool measured = f.is_area && f.power > 0.0 && f.kind == ContributionKind::repeatability;
+    check_quantity(f.name, f.quantity, measured && m.method != ThicknessMethod::substrate_line);
+  }
+  check_quantity(kFilmLengthName, m.film_line_length_nm, false);
   if (m.substrate_line_length_nm) check_quantity(kSubstrateLengthName, *m.substrate_line_length_nm, false);
   check_emission_deg(m.emission_deg.value);
   check_quantity(kEmissionName, m.emission_deg, true);
@@ -257,8 +272,7 @@ std::optional<double> thickness_of_draw(const FilmMeasurement& m, std::span<cons
   double r = 1.0;
   std::size_t i = 0;
   for (const SignalFactor& f : m.factors) {
-    const double value = inputs[i++];
-    r *= f.power == 1.0 ? value : f.power == -1.0 ? 1.0 / value : std::pow(value, f.power);
+    apply(r, inputs[i++], f.power);
   }
   const double film_length = inputs[i++];
   const double rho = m.substrate_line_length_nm ? film_length / inputs[i++] : 1.0;

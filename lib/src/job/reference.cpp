@@ -332,6 +332,9 @@ void add_reference_ratio(const Run& run, const ReferenceRatio* reference, const 
     return;
   }
   if (reference) {
+    if (!(reference->ratio.value > 0.0)) {
+      throw InputError(run.place, "the reference ratio " + number_text(reference->ratio.value) + " is not a number > 0");
+    }
     route.factors.push_back({"reference_ratio", reference->ratio, -1.0, ContributionKind::scale});
     route.reference_ratio = reference->ratio;
     route.reference_origin = "given";

@@ -44,7 +44,8 @@ const Element& element(std::string_view symbol) {
   if (const Element* found = find_element(symbol)) return *found;
   std::vector<std::string> symbols;
   for (const Element& e : elements()) symbols.push_back(e.symbol);
-  const std::string near = symbol.size() <= 2 ? detail::nearest_name(symbol, symbols) : std::string();
+  std::string near = detail::nearest_name(symbol, symbols);
+  if (detail::edit_distance(near, symbol) > 1) near.clear();  // any two letters are near to some symbol
   throw InputError("", "unknown element \"" + std::string(symbol) + "\"",
                    near.empty() ? "expected the symbol of an element from H to U" : "did you mean \"" + near + "\"?");
 }

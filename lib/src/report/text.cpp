@@ -263,7 +263,7 @@ std::string check_text(const Run& run, const ThicknessResults& results) {
     if (r.failure.empty()) continue;
     if (++failed <= kMostRows) failures += fmt::format("  no thickness: {}\n", r.failure);
   }
-  text += fmt::format("\n{} areas, {} thicknesses or bounds can be computed, {} cannot\n{}", run.areas.size(), results.results.size() - failed, failed, failures);
+  text += fmt::format("\n{} areas, {} thicknesses can be computed, {} cannot\n{}", run.areas.size(), results.results.size() - failed, failed, failures);
   const std::string findings = findings_text(distinct(results.findings));
   if (!findings.empty()) text += "\n" + findings;
   return text;

@@ -28,9 +28,9 @@ enum class ReferenceOrigin { given, table, computed };
 struct ReferenceRatio {
   std::string film;       ///< label of the film's line
   std::string substrate;  ///< label of the substrate's line
-  ReferenceOrigin origin = ReferenceOrigin::given;
   Quantity ratio;         ///< when given
-  std::string table_key;  ///< when from a table: a key of reference/data/reference_ratios.csv
+  ReferenceOrigin origin = ReferenceOrigin::given;
+  std::string table_key = {};  ///< when from a table: a key of reference/data/reference_ratios.csv
 };
 
 /// How the thickness of a contamination layer follows from its C 1s line.

@@ -2,6 +2,7 @@
 
 #include <sys/resource.h>
 #include <sys/stat.h>
+#include <unistd.h>
 
 #include <csignal>
 #include <filesystem>
@@ -92,6 +93,16 @@ TEST_CASE("a folder that is not there or is no folder takes no file") {
     CHECK(contains(error.fact(), "cannot be written"));
   }
   CHECK(contains(error_of<InputError>([&] { write_text_file(folder.path(), "x"); }).fact(), "this is a folder"));
+}
+
+TEST_CASE("a folder without permission takes no file and keeps the one it has") {
+  if (::geteuid() == 0) return;  // permissions do not bind the superuser; the full disk above is for everyone
+  const ScratchFolder folder;
+  const std::string path = folder.write("result.json", "the older result");
+  REQUIRE(::chmod(folder.path().c_str(), 0555) == 0);
+  CHECK(contains(error_of<InputError>([&] { write_text_file(path, "x"); }).fact(), "cannot be written"));
+  REQUIRE(::chmod(folder.path().c_str(), 0755) == 0);
+  CHECK(read_whole_file(path) == "the older result");
 }
 
 TEST_CASE("a device that refuses is reported") {

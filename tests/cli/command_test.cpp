@@ -146,8 +146,15 @@ TEST_CASE("uncertainties given on the command line make the budget") {
       pellicle_command(kSilica + Words{"--length-nm-sd", "0.3448", "--reference-ratio-sd", "0.046645",
                                        "--emission-deg-sd", "1", "--area-unit", "counts", "--json"});
   check_done(r);
-  const json t = json::parse(r.out).at("results").at(0).at("thickness_nm");
-  CHECK(close_to(t.at("sd"), 0.34462, pellicle::test::abs(5e-6)));
+  const json result = json::parse(r.out).at("results").at(0);
+  CHECK(close_to(result.at("gum_nm").at("sd"), 0.34462, pellicle::test::abs(5e-6)));
+  // Length and ratio lognormal: the Monte Carlo figures of the same table, mean 3.277, sd 0.345, 2.653 to 4.004.
+  const json& t = result.at("thickness_nm");
+  CHECK(t.at("interval_from") == "monte-carlo");
+  CHECK(close_to(result.at("monte_carlo_nm").at("mean"), 3.277, pellicle::test::abs(0.01)));
+  CHECK(close_to(t.at("sd"), 0.345, pellicle::test::abs(0.01)));
+  CHECK(close_to(t.at("low95"), 2.653, pellicle::test::abs(0.01)));
+  CHECK(close_to(t.at("high95"), 4.004, pellicle::test::abs(0.01)));
 }
 
 TEST_CASE("a calibrated set or a prediction stands in for a length") {

@@ -181,7 +181,7 @@ TEST_CASE("every fault of a run is named with file and line and column and key")
       {"substrate = \"Si\"", "substrate = 14", "14\n", "sample.substrate", "not a material"},
       {"length_nm = { oxide = { value = 3.448, relative_sd = 0.05 } }", "length_nm = 3.448", "3.448",
        "line[1].length_nm", "a number"},
-      {"{ value = 0.9329, sd = 0.01 }", "\"0.9329\"", "\"0.9329\"", "reference[1].ratio", "text"},
+      {"{ value = 0.9329, sd = 0.01 }", "\"0.9329\"", "\"0.9329\"", "reference[1].ratio", "is not a ratio"},
       // values out of range
       {"source = \"Al Ka\"", "source = \"Zz Ka\"", "\"Zz Ka\"", "instrument.source", "unknown photon source"},
       {"source = \"Al Ka\"", "photon_energy_ev = 5", "5\n", "instrument.photon_energy_ev",

@@ -45,7 +45,7 @@ def imfp_nm(material, energy_ev, *, model="TPP-2M", status=False):
     (2,)
     """
     energies = as_real("energy_ev", energy_ev)
-    values, codes = _core._imfp_arrays(material, np.ascontiguousarray(energies), model)
+    values, codes = _core._imfp_arrays(material, np.asarray(energies, order="C"), model)
     if not status and codes.any():
         # The scalar function knows the reason in words.
         _core._imfp_scalar(material, float(energies.ravel()[int(np.flatnonzero(codes.ravel())[0])]), model)

@@ -98,7 +98,7 @@ def test_the_run_is_the_calculation_of_thickness_from_areas(two_energies):
                                         reference_substrate_area=12000.0, film_line_length_nm=film_length,
                                         substrate_line_length_nm=substrate_length, emission_deg=(30.0, 1.0))
     assert first["thickness_nm"]["value"] == own.value_nm
-    assert first["thickness_nm"]["sd"] == own.standard_uncertainty_nm
+    assert first["gum_nm"]["sd"] == own.standard_uncertainty_nm
     assert [row["contribution_nm"] for row in first["budget"]] == [row.contribution_nm for row in own.budget]
 
 

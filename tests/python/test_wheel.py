@@ -40,7 +40,7 @@ def test_the_installed_command_gives_the_same_numbers(coupon):
     shown = subprocess.run([INSTALLED_COMMAND, "thickness", coupon, "--csv"], capture_output=True, encoding="utf-8", check=True,
                            timeout=60)
     first = shown.stdout.splitlines()[1].split(",")
-    assert float(first[5]) == pellicle.thickness(coupon)["results"][0]["thickness_nm"]["value"]
+    assert float(first[6]) == pellicle.thickness(coupon)["results"][0]["thickness_nm"]["value"]
 
 
 def test_the_wheel_holds_nothing_but_the_package_and_the_command():

@@ -6,6 +6,7 @@
 #include "pellicle/base/finding.hpp"
 #include "pellicle/base/number.hpp"
 #include "pellicle/base/parallel.hpp"
+#include "pellicle/base/random.hpp"
 #include "pellicle/base/status.hpp"
 #include "pellicle/base/version.hpp"
 #include "pellicle/uncertainty/budget.hpp"

@@ -112,6 +112,7 @@ TEST_CASE("composition ignores spelling and size of the formula unit but nothing
   CHECK_FALSE(same("SiO2", "Si"));
   CHECK_FALSE(same("SiO2", "TiO2"));
   CHECK_FALSE(same("Fe0.947O", "FeO"));
+  CHECK_FALSE(same("Fe0.9999O", "FeO"));
   CHECK_FALSE(same("Al2O3", "Al2O3*H2O"));
 }
 

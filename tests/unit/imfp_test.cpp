@@ -234,9 +234,15 @@ TEST_CASE("a missing band gap is used as zero and said") {
 
 TEST_CASE("undecided valence electrons refuse TPP-2M but not S1") {
   const Material ceria = make_material("CeO2", 7.2, 3.2);
-  CHECK(contains(predict_imfp(ceria, 1000.0, ImfpModel::tpp2m).refusal, "Ce"));
+  CHECK(contains(predict_imfp(ceria, 1000.0, ImfpModel::tpp2m).refusal, "electrons of Ce could not be decided"));
   CHECK(predict_imfp(ceria, 1000.0, ImfpModel::s1).value_nm.has_value());
   CHECK(predict_imfp(make_material("CeO2", 7.2, 3.2, 21.0), 1000.0, ImfpModel::tpp2m).value_nm.has_value());
+}
+
+TEST_CASE("doubtful valence electrons are said of the mean free path that rests on them") {
+  const Material zinc_oxide = make_material("ZnO", 5.68, 3.3);
+  CHECK(has_finding(predict_imfp(zinc_oxide, 1000.0, ImfpModel::tpp2m).findings, "valence_electrons_doubtful"));
+  CHECK_FALSE(has_finding(predict_imfp(zinc_oxide, 1000.0, ImfpModel::s1).findings, "valence_electrons_doubtful"));
 }
 
 TEST_CASE("parameters of TPP-2M need a solid") {

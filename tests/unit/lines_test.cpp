@@ -52,6 +52,8 @@ TEST_CASE("an unknown source is refused with the known ones and the way around t
 
 TEST_CASE("any photon energy is a source and that of a named line is that line") {
   CHECK(photon_source_of_energy(1486.6).name == "Al Ka");
+  CHECK(photon_source_of_energy(1486.64).name == "Al Ka");
+  CHECK(photon_source_of_energy(1486.7).name == "1486.7 eV");  // tuned near the line is not the line
   CHECK(photon_source_of_energy(1000.0).name == "1000 eV");
   CHECK(photon_source_of_energy(1000.0).photon_energy_ev == 1000.0);
   CHECK(photon_source_of_energy(20.0).photon_energy_ev == 20.0);

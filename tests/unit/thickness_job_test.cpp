@@ -138,6 +138,13 @@ TEST_CASE("lines of different energy get a length each and share the error of th
   given.lines[1].length_nm["hafnia"] = *m.substrate_line_length_nm;
   CHECK(close_to(only(run_thickness(given)).standard_uncertainty_nm, thickness_from_areas(m).standard_uncertainty_nm,
                  rel(1e-14)));
+  // Nor do a given and a predicted one.
+  for (const std::size_t predicted : {0, 1}) {
+    Run mixed = given;
+    mixed.lines[predicted].length_nm.clear();
+    CHECK(close_to(only(run_thickness(mixed)).standard_uncertainty_nm, thickness_from_areas(m).standard_uncertainty_nm,
+                   rel(1e-14)));
+  }
 }
 
 TEST_CASE("contamination above the film matters for lines of different energy only") {

@@ -12,32 +12,27 @@ namespace {
 /// More inputs than any route has.
 constexpr std::size_t kMostInputs = 32;
 
-RandomInput area_input(const Quantity& q) { return {q.value, q.sd(), Shape::truncated_normal}; }
+Distribution area_input(const Quantity& q) { return Distribution::truncated_normal(q.value, q.sd()); }
 
 /// Positive quantities keep their sign under any uncertainty.
-RandomInput positive_input(const Quantity& q) { return {q.value, q.sd(), Shape::lognormal}; }
+Distribution positive_input(const Quantity& q) { return Distribution::lognormal(q.value, q.sd()); }
 
 }  // namespace
 
 MonteCarloThickness thickness_by_monte_carlo(const FilmMeasurement& m, const Thickness& gum, const UncertaintyOptions& options,
                                              std::uint64_t stream) {
-  std::vector<RandomInput> inputs;
-  std::vector<std::string> names;
-  for (const SignalFactor& f : m.factors) {
-    inputs.push_back(f.is_area ? area_input(f.quantity) : positive_input(f.quantity));
-    names.push_back(f.name);
-  }
-  inputs.push_back(positive_input(m.film_line_length_nm));
-  names.emplace_back(m.substrate_line_length_nm ? kFilmLengthName : kLengthName);
-  if (m.substrate_line_length_nm) {
-    inputs.push_back(positive_input(*m.substrate_line_length_nm));
-    names.emplace_back(kSubstrateLengthName);
-  }
-  inputs.push_back({m.emission_deg.value, m.emission_deg.sd(), Shape::normal});
-  names.emplace_back(kEmissionName);
+  std::vector<ModelInput> inputs;
+  const auto add = [&](const std::string& name, const Distribution& distribution) { inputs.push_back({name, distribution}); };
+  for (const SignalFactor& f : m.factors) add(f.name, f.is_area ? area_input(f.quantity) : positive_input(f.quantity));
+  add(m.substrate_line_length_nm ? kFilmLengthName : kLengthName, positive_input(m.film_line_length_nm));
+  if (m.substrate_line_length_nm) add(kSubstrateLengthName, positive_input(*m.substrate_line_length_nm));
+  // An angle drawn across the normal is the same angle on its other side; cos does not see the sign.
+  add(kEmissionName, Distribution::normal(m.emission_deg.value, m.emission_deg.sd()));
 
   std::vector<Correlation> correlations;
-  const auto position = [&](const std::string& name) { return static_cast<std::size_t>(std::find(names.begin(), names.end(), name) - names.begin()); };
+  const auto position = [&](const std::string& name) {
+    return static_cast<std::size_t>(std::find_if(inputs.begin(), inputs.end(), [&](const ModelInput& i) { return i.name == name; }) - inputs.begin());
+  };
   for (const NamedCorrelation& c : m.correlations) correlations.push_back({position(c.first), position(c.second), c.coefficient});
 
   const double cone = m.acceptance_half_angle_deg == 0.0 ? 1.0 : cone_factor(m);
@@ -49,12 +44,14 @@ MonteCarloThickness thickness_by_monte_carlo(const FilmMeasurement& m, const Thi
       out[i] = thickness_of_draw(m, values, cone).value_or(std::numeric_limits<double>::quiet_NaN());
     }
   };
-  MonteCarloOptions settings{options.draws, options.seed, stream, options.method == IntervalMethod::adaptive_monte_carlo, false};
-  if (settings.adaptive) settings.draws = std::min<std::size_t>(settings.draws, 10'000);
-  const MonteCarloResult drawn = propagate_by_monte_carlo(inputs, correlations, model, settings);
-  // An angle drawn across the normal is the same angle on its other side; cos does not see the sign.
-  return {drawn.mean, drawn.standard_deviation, drawn.symmetric, drawn.draws, drawn.rejected,
-          intervals_agree(gum.interval_nm, drawn.symmetric, gum.standard_uncertainty_nm)};
+  MonteCarloOptions settings;
+  settings.draws = options.draws;
+  settings.adaptive = options.method == IntervalMethod::adaptive_monte_carlo;
+  settings.seed = options.seed + 0x9E3779B97F4A7C15ULL * stream;  // every result has draws of its own
+  const MonteCarlo drawn = monte_carlo(model, inputs, correlations, settings);
+  const bool agrees = gum.standard_uncertainty_nm > 0.0 &&
+                      compare_intervals({gum.interval_nm.low95, gum.interval_nm.high95}, drawn.symmetric, gum.standard_uncertainty_nm, 1).agree;
+  return {drawn.mean, drawn.sd, {drawn.symmetric.low, drawn.symmetric.high}, drawn.draws, drawn.rejected, agrees};
 }
 
 }  // namespace pellicle::detail

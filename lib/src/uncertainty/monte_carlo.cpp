@@ -1,213 +1,410 @@
 #include "pellicle/uncertainty/monte_carlo.hpp"
 
+#include <Eigen/Dense>
 #include <algorithm>
+#include <array>
+#include <atomic>
 #include <cmath>
-#include <numbers>
-#include <numeric>
+#include <limits>
+#include <memory>
+#include <mutex>
 #include <optional>
+#include <string>
+#include <thread>
+#include <utility>
 
-#include <Eigen/Eigenvalues>
-#include <boost/math/special_functions/erf.hpp>
-
-#include "pellicle/base/error.hpp"
-#include "pellicle/base/number.hpp"
 #include "pellicle/base/parallel.hpp"
 #include "pellicle/base/random.hpp"
+#include "uncertainty/order_statistics.hpp"
+#include "uncertainty/sampler.hpp"
+#include "uncertainty/tasks.hpp"
 
 namespace pellicle {
 namespace {
 
 constexpr std::size_t kFewestDraws = 1000;
-constexpr std::size_t kMostSteps = 100;
+constexpr std::size_t kFirstBatches = 8;
 
-double upper_tail(double z) { return 0.5 * std::erfc(z / std::numbers::sqrt2); }
+/// Number of values, their mean and the sum of squared deviations from it.
+struct Moments {
+  std::size_t size = 0;
+  double mean = 0.0;
+  double squares = 0.0;
 
-/// Standard normal number → number of the wanted shape.
-class Transform {
+  [[nodiscard]] double sd() const { return size > 1 ? std::sqrt(squares / static_cast<double>(size - 1)) : 0.0; }
+};
+
+/// Sum in eight interleaved parts: as fast as memory, and the same on every processor.
+template <typename Term>
+double sum(std::span<const double> values, Term&& term) {
+  constexpr std::size_t kParts = 8;
+  double part[kParts] = {};
+  std::size_t i = 0;
+  for (; i + kParts <= values.size(); i += kParts) {
+    for (std::size_t j = 0; j < kParts; ++j) part[j] += term(values[i + j]);
+  }
+  for (std::size_t j = 0; i < values.size(); ++i, ++j) part[j] += term(values[i]);
+  return ((part[0] + part[1]) + (part[2] + part[3])) + ((part[4] + part[5]) + (part[6] + part[7]));
+}
+
+Moments moments(std::span<const double> values) {
+  if (values.empty()) return {};
+  const double mean = sum(values, [](double y) { return y; }) / static_cast<double>(values.size());
+  return {values.size(), mean, sum(values, [mean](double y) { return (y - mean) * (y - mean); })};
+}
+
+/// The pairwise update of Chan, Golub and LeVeque (1983) [chan1983].
+Moments together(const Moments& a, const Moments& b) {
+  if (a.size == 0) return b;
+  if (b.size == 0) return a;
+  const double na = static_cast<double>(a.size), nb = static_cast<double>(b.size);
+  const double difference = b.mean - a.mean;
+  return {a.size + b.size, a.mean + difference * (nb / (na + nb)),
+          a.squares + b.squares + difference * difference * (na * nb / (na + nb))};
+}
+
+/// Matrix F with F Fᵀ = R, the correlation matrix; F times independent normal numbers are correlated ones. R may be
+/// singular, as it is for a coefficient of 1.
+Eigen::MatrixXd factor(const Eigen::MatrixXd& correlation) {
+  const Eigen::SelfAdjointEigenSolver<Eigen::MatrixXd> solver(correlation);
+  if (solver.info() != Eigen::Success || solver.eigenvalues().minCoeff() < -1e-12 * static_cast<double>(correlation.rows())) {
+    throw InputError("correlation", "no quantities can have these coefficients together");
+  }
+  return solver.eigenvectors() * solver.eigenvalues().cwiseMax(0.0).cwiseSqrt().asDiagonal();
+}
+
+/// Draws blocks of all inputs.
+class InputDraws {
  public:
-  explicit Transform(const RandomInput& input) : input_(input) {
-    if (input.shape == Shape::lognormal) {
-      const double relative = input.standard_deviation / input.mean;
-      log_sd_ = std::sqrt(std::log1p(relative * relative));
-      log_mean_ = std::log(input.mean) - 0.5 * log_sd_ * log_sd_;
-    } else if (input.shape == Shape::truncated_normal && input.standard_deviation > 0.0) {
-      above_zero_ = upper_tail(-input.mean / input.standard_deviation);
+  InputDraws(const std::vector<ModelInput>& inputs, const std::vector<Correlation>& correlations, std::uint64_t seed)
+      : seed_(seed) {
+    std::vector<UncertainInput> checked;  // combine() refuses what cannot be
+    for (const ModelInput& input : inputs) {
+      samplers_.emplace_back(input.distribution);
+      constants_.push_back(input.distribution.sd() == 0.0 ? std::optional(input.distribution.mean()) : std::nullopt);
+      checked.push_back({input.name, input.distribution.mean(), input.distribution.sd(), 1.0, input.kind});
     }
+    (void)combine(checked, correlations);
+    for (std::size_t i = 0; i < inputs.size(); ++i) {
+      if (constants_[i]) continue;
+      const bool correlated = std::any_of(correlations.begin(), correlations.end(), [&](const Correlation& c) {
+        return c.coefficient != 0.0 && (c.first == i || c.second == i) && !constants_[c.first] && !constants_[c.second];
+      });
+      (correlated ? correlated_ : independent_).push_back(i);
+    }
+    if (correlated_.empty()) return;
+    const auto size = static_cast<Eigen::Index>(correlated_.size());
+    Eigen::MatrixXd matrix = Eigen::MatrixXd::Identity(size, size);
+    const auto place = [&](std::size_t input) {
+      return std::find(correlated_.begin(), correlated_.end(), input) - correlated_.begin();
+    };
+    for (const Correlation& c : correlations) {
+      if (place(c.first) >= size || place(c.second) >= size) continue;
+      matrix(place(c.first), place(c.second)) += c.coefficient;
+      matrix(place(c.second), place(c.first)) += c.coefficient;
+    }
+    factor_ = factor(matrix);
   }
 
-  void apply(std::span<double> z) const {
-    const double sd = input_.standard_deviation;
-    switch (input_.shape) {
-      case Shape::normal:
-        for (double& v : z) v = input_.mean + sd * v;
-        return;
-      case Shape::lognormal:
-        for (double& v : z) v = std::exp(log_mean_ + log_sd_ * v);
-        return;
-      case Shape::rectangular:
-        // Φ(z) is uniform on 0 … 1; the half width is √3 standard deviations.
-        for (double& v : z) v = input_.mean + sd * std::numbers::sqrt3 * (1.0 - 2.0 * upper_tail(v));
-        return;
-      case Shape::truncated_normal: break;
+  /// Columns of one block, in a buffer that is used for one block after the other.
+  class Buffer {
+   public:
+    explicit Buffer(const InputDraws& draws) : numbers_(draws.samplers_.size() * kBlockSize) {
+      for (std::size_t i = 0; i < draws.samplers_.size(); ++i) {
+        if (draws.constants_[i]) std::fill_n(column(i, kBlockSize).begin(), kBlockSize, *draws.constants_[i]);
+      }
+      normal_.resize(draws.correlated_.size() * kBlockSize);
+      views_.resize(draws.samplers_.size());
     }
-    // Five standard deviations above zero the cut is below the noise of any Monte Carlo.
-    if (!(sd > 0.0) || input_.mean > 5.0 * sd) {
-      for (double& v : z) v = std::max(input_.mean + sd * v, 0.0);
-      return;
+
+   private:
+    friend class InputDraws;
+    [[nodiscard]] std::span<double> column(std::size_t i, std::size_t size) {
+      return std::span(numbers_).subspan(i * kBlockSize, size);
     }
-    for (double& v : z) {
-      const double tail = std::clamp(upper_tail(v) * above_zero_, 1e-300, 1.0);
-      v = std::max(input_.mean + sd * std::numbers::sqrt2 * boost::math::erfc_inv(2.0 * tail), 0.0);
+
+    std::vector<double> numbers_;
+    std::vector<double> normal_;  // independent normal numbers, to be correlated
+    std::vector<std::span<const double>> views_;
+  };
+
+  /// The first `size` draws of a block. What is returned lives until the next call with the same buffer.
+  [[nodiscard]] std::span<const std::span<const double>> draw(std::size_t block, std::size_t size, Buffer& buffer) const {
+    RandomStream stream(seed_, block);
+    for (const std::size_t i : independent_) samplers_[i].draw(stream, buffer.column(i, size));
+    for (std::size_t j = 0; j < correlated_.size(); ++j)
+      stream.fill_normal(std::span(buffer.normal_).subspan(j * kBlockSize, size));
+    for (std::size_t row = 0; row < correlated_.size(); ++row) {
+      const std::span<double> column = buffer.column(correlated_[row], size);
+      std::fill(column.begin(), column.end(), 0.0);
+      for (std::size_t j = 0; j < correlated_.size(); ++j) {
+        const double weight = factor_(static_cast<Eigen::Index>(row), static_cast<Eigen::Index>(j));
+        const double* normal = buffer.normal_.data() + j * kBlockSize;
+        for (std::size_t k = 0; k < size; ++k) column[k] += weight * normal[k];
+      }
+      samplers_[correlated_[row]].from_normal(column);
     }
+    for (std::size_t i = 0; i < samplers_.size(); ++i) buffer.views_[i] = buffer.column(i, size);
+    return buffer.views_;
   }
 
  private:
-  RandomInput input_;
-  double log_mean_ = 0.0, log_sd_ = 0.0, above_zero_ = 1.0;
+  std::uint64_t seed_;
+  std::vector<detail::Sampler> samplers_;
+  std::vector<std::optional<double>> constants_;
+  std::vector<std::size_t> independent_, correlated_;
+  Eigen::MatrixXd factor_;
 };
 
-void check(const std::vector<RandomInput>& inputs, const MonteCarloOptions& options) {
-  for (const RandomInput& input : inputs) {
-    if (!std::isfinite(input.mean) || !(input.standard_deviation >= 0.0) || !std::isfinite(input.standard_deviation)) {
-      throw InputError("Monte Carlo", "an input has no finite mean or standard deviation >= 0");
+/// Buffers that no thread uses at the moment.
+class BufferPool {
+ public:
+  explicit BufferPool(const InputDraws& draws) : draws_(draws) {}
+
+  [[nodiscard]] std::unique_ptr<InputDraws::Buffer> take() {
+    const std::lock_guard lock(mutex_);
+    if (free_.empty()) return std::make_unique<InputDraws::Buffer>(draws_);
+    auto buffer = std::move(free_.back());
+    free_.pop_back();
+    return buffer;
+  }
+  void give_back(std::unique_ptr<InputDraws::Buffer> buffer) {
+    const std::lock_guard lock(mutex_);
+    free_.push_back(std::move(buffer));
+  }
+
+ private:
+  const InputDraws& draws_;
+  std::mutex mutex_;
+  std::vector<std::unique_ptr<InputDraws::Buffer>> free_;
+};
+
+/// Values of the model for all draws so far.
+class Values {
+ public:
+  Values(const BlockModel& model, const InputDraws& draws, const MonteCarloOptions& options, std::size_t most)
+      : model_(model), draws_(draws), options_(options), pool_(draws),
+        values_(std::make_unique_for_overwrite<double[]>(most)), blocks_((most + kBlockSize - 1) / kBlockSize) {}
+
+  /// Draws until there are `planned` draws; all blocks before the last must have been whole.
+  void extend_to(std::size_t planned) {
+    const std::size_t before = made_;
+    std::atomic<std::size_t> done{before};
+    std::atomic<bool> cancelled{false};
+    const auto caller = std::this_thread::get_id();
+    for_each_block(
+        planned - before,
+        [&](std::size_t begin, std::size_t end) {
+          if (cancelled) return;
+          evaluate(before + begin, before + end);
+          done += end - begin;
+          if (options_.progress && std::this_thread::get_id() == caller && !options_.progress(done, planned)) {
+            cancelled = true;
+            throw Cancelled("Monte Carlo", "cancelled");
+          }
+        },
+        options_.threads);
+    made_ = planned;
+  }
+
+  [[nodiscard]] std::size_t made() const { return made_; }
+
+  /// Of the draws [begin, end), whole blocks; those with a value only.
+  [[nodiscard]] Moments moments_of(std::size_t begin, std::size_t end) const {
+    Moments all;
+    for (std::size_t b = begin / kBlockSize; b * kBlockSize < end; ++b) all = together(all, blocks_[b]);
+    return all;
+  }
+  [[nodiscard]] std::vector<double> values_of(std::size_t begin, std::size_t end) const {
+    std::vector<double> all;
+    for (std::size_t b = begin / kBlockSize; b * kBlockSize < end; ++b) {
+      const double* first = values_.get() + b * kBlockSize;
+      all.insert(all.end(), first, first + blocks_[b].size);
     }
-    if (input.shape == Shape::lognormal && !(input.mean > 0.0)) throw InputError("Monte Carlo", "a lognormal input has a mean that is not > 0");
+    return all;
   }
-  if (options.draws < kFewestDraws) {
-    throw InputError("draws", std::to_string(options.draws) + " draws are too few", "expected at least " + std::to_string(kFewestDraws));
-  }
-}
 
-/// Symmetric root of the correlation matrix; nothing when all inputs are independent.
-std::optional<Eigen::MatrixXd> correlation_root(std::size_t size, const std::vector<Correlation>& correlations) {
-  const bool any = std::any_of(correlations.begin(), correlations.end(), [](const Correlation& c) { return c.coefficient != 0.0; });
-  if (!any) return std::nullopt;
-  const auto n = static_cast<Eigen::Index>(size);
-  Eigen::MatrixXd matrix = Eigen::MatrixXd::Identity(n, n);
-  for (const Correlation& c : correlations) {
-    if (c.first >= size || c.second >= size || c.first == c.second || !(std::abs(c.coefficient) <= 1.0)) {
-      throw InputError("correlation", "it names an input that does not exist, or lies outside [-1, 1]");
+  /// All values, one after the other; afterwards only this may be called.
+  [[nodiscard]] std::span<double> compact() {
+    std::size_t size = 0;
+    for (std::size_t b = 0; b * kBlockSize < made_; ++b) {
+      if (size != b * kBlockSize) std::copy_n(values_.get() + b * kBlockSize, blocks_[b].size, values_.get() + size);
+      size += blocks_[b].size;
     }
-    matrix(static_cast<Eigen::Index>(c.first), static_cast<Eigen::Index>(c.second)) = c.coefficient;
-    matrix(static_cast<Eigen::Index>(c.second), static_cast<Eigen::Index>(c.first)) = c.coefficient;
+    return {values_.get(), size};
   }
-  const Eigen::SelfAdjointEigenSolver<Eigen::MatrixXd> solver(matrix);
-  if (solver.eigenvalues().minCoeff() < -1e-10) throw InputError("correlation", "the correlations contradict one another");
-  const Eigen::VectorXd roots = solver.eigenvalues().cwiseMax(0.0).cwiseSqrt();
-  return solver.eigenvectors() * roots.asDiagonal() * solver.eigenvectors().transpose();
+
+ private:
+  /// One block. Values that are not finite are left out, the others moved up.
+  void evaluate(std::size_t begin, std::size_t end) {
+    const std::size_t block = begin / kBlockSize;
+    const std::span<double> result(values_.get() + begin, end - begin);
+    auto buffer = pool_.take();
+    model_(draws_.draw(block, result.size(), *buffer), result);
+    pool_.give_back(std::move(buffer));
+    blocks_[block] = moments(result);
+    if (std::isfinite(blocks_[block].squares)) return;  // then all values are
+    const auto finite_end = std::remove_if(result.begin(), result.end(), [](double y) { return !std::isfinite(y); });
+    blocks_[block] = moments({result.begin(), finite_end});
+  }
+
+  const BlockModel& model_;
+  const InputDraws& draws_;
+  const MonteCarloOptions& options_;
+  BufferPool pool_;
+  std::unique_ptr<double[]> values_;
+  std::vector<Moments> blocks_;
+  std::size_t made_ = 0;
+};
+
+/// Batches of JCGM 101:2008, 7.9.4 b), in whole blocks.
+std::size_t batch_size(double coverage_probability) {
+  const double least = std::max(1e4, std::ceil(100.0 / (1.0 - coverage_probability)));
+  return (static_cast<std::size_t>(least) + kBlockSize - 1) / kBlockSize * kBlockSize;
 }
 
-/// Draws [begin, begin + out.size()) of a run; `begin` is a multiple of the block size.
-void draw(const std::vector<Transform>& transforms, const std::optional<Eigen::MatrixXd>& root, const BlockModel& model,
-          const MonteCarloOptions& options, std::size_t begin, std::span<double> out) {
-  const std::size_t inputs = transforms.size();
-  for_each_block(out.size(), [&](std::size_t low, std::size_t high) {
-    const std::size_t size = high - low;
-    std::vector<double> numbers(inputs * size);
-    RandomStream random(options.seed, options.stream, (begin + low) / kBlockSize);
-    random.fill_normal(numbers);
-    if (root) {
-      using Columns = Eigen::Map<Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, Eigen::RowMajor>>;
-      Columns block(numbers.data(), static_cast<Eigen::Index>(inputs), static_cast<Eigen::Index>(size));
-      block = (*root * block).eval();
+/// Mean, standard deviation and both ends of the interval of each batch; JCGM 101:2008, 7.9.4 f) to k) [jcgm101].
+class BatchRecord {
+ public:
+  void extend(const Values& values, std::size_t batch, const MonteCarloOptions& options) {
+    const std::size_t before = rows_.size();
+    rows_.resize(values.made() / batch);
+    detail::for_each_task(
+        rows_.size() - before,
+        [&](std::size_t task) {
+          const std::size_t row = before + task;
+          std::vector<double> y = values.values_of(row * batch, (row + 1) * batch);
+          if (y.size() < 2) return;  // the draws are refused as a whole later
+          const Moments m = values.moments_of(row * batch, (row + 1) * batch);
+          const CoverageInterval i = detail::symmetric_interval(y, options.coverage_probability);
+          rows_[row] = {m.mean, m.sd(), i.low, i.high};
+        },
+        options.threads);
+  }
+
+  /// Twice the standard deviation of the mean over the batches does not exceed the tolerance, for all four.
+  [[nodiscard]] bool stable(double tolerance) const {
+    for (std::size_t column = 0; column < 4; ++column) {
+      std::vector<double> results;
+      for (const auto& row : rows_) results.push_back(row[column]);
+      if (2.0 * moments(results).sd() / std::sqrt(static_cast<double>(rows_.size())) > tolerance) return false;
     }
-    std::vector<std::span<const double>> columns;
-    for (std::size_t i = 0; i < inputs; ++i) {
-      const std::span<double> column(numbers.data() + i * size, size);
-      transforms[i].apply(column);
-      columns.emplace_back(column);
-    }
-    model(columns, out.subspan(low, size));
-  });
-}
-
-/// The k-th smallest (0-based) of values from `from` on, which all lie above what stands before.
-double order_statistic(std::vector<double>& values, std::size_t from, std::size_t k) {
-  const auto at = values.begin() + static_cast<std::ptrdiff_t>(k);
-  std::nth_element(values.begin() + static_cast<std::ptrdiff_t>(from), at, values.end());
-  return *at;
-}
-
-MonteCarloResult summarise(std::vector<double>& values, bool with_shortest) {
-  MonteCarloResult result;
-  const std::size_t all = values.size();
-  std::erase_if(values, [](double v) { return !std::isfinite(v); });
-  result.draws = values.size();
-  result.rejected = all - values.size();
-  if (2 * values.size() < all || values.empty()) {
-    throw DomainError("Monte Carlo", std::to_string(result.rejected) + " of " + std::to_string(all) + " draws have no answer");
+    return true;
   }
-  const double n = static_cast<double>(values.size());
-  result.mean = std::accumulate(values.begin(), values.end(), 0.0) / n;
-  double squares = 0.0;
-  for (const double v : values) squares += (v - result.mean) * (v - result.mean);
-  result.standard_deviation = std::sqrt(squares / (n - 1.0));
-  // JCGM 101, 7.7.2: with q = 0.95 M draws inside, r = (M − q)/2 lie below.
-  const std::size_t inside = static_cast<std::size_t>(0.95 * n + 0.5);
-  const std::size_t below = (values.size() - inside) / 2;
-  if (!with_shortest) {
-    result.symmetric.low95 = order_statistic(values, 0, below);
-    result.symmetric.high95 = order_statistic(values, below, std::min(below + inside, values.size() - 1));
-    result.shortest = result.symmetric;
-    return result;
+
+ private:
+  std::vector<std::array<double, 4>> rows_;
+};
+
+/// Draws in batches until the results are stable. @return whether they are
+bool draw_until_stable(Values& values, const MonteCarloOptions& options) {
+  const std::size_t batch = batch_size(options.coverage_probability);
+  const std::size_t most_batches = options.most_draws / batch;
+  BatchRecord record;
+  for (std::size_t batches = kFirstBatches;;) {
+    values.extend_to(batches * batch);
+    record.extend(values, batch, options);
+    const double u = values.moments_of(0, values.made()).sd();
+    if (record.stable(u > 0.0 ? numerical_tolerance(u, options.significant_digits) : 0.0)) return true;
+    if (batches == most_batches) return false;
+    batches = std::min(most_batches, batches + std::max<std::size_t>(1, batches / 4));
   }
-  std::sort(values.begin(), values.end());
-  result.symmetric = {values[below], values[std::min(below + inside, values.size() - 1)]};
-  result.shortest = result.symmetric;
-  for (std::size_t r = 0; r + inside < values.size(); ++r) {
-    if (values[r + inside] - values[r] < result.shortest.high95 - result.shortest.low95) result.shortest = {values[r], values[r + inside]};
-  }
-  return result;
 }
 
-/// Half a unit of the last of `digits` significant digits of u (JCGM 101, 7.9.2).
-double numerical_tolerance(double standard_uncertainty, int digits) {
-  if (!(standard_uncertainty > 0.0)) return 0.0;
-  return 0.5 * std::pow(10.0, std::floor(std::log10(standard_uncertainty)) - (digits - 1));
-}
-
-/// Twice the standard deviation of the mean of each figure over the steps, against the tolerance.
-bool stable(const std::vector<MonteCarloResult>& steps, double tolerance) {
-  if (steps.size() < 2) return false;
-  const double h = static_cast<double>(steps.size());
-  const auto settled = [&](auto figure) {
-    double mean = 0.0, squares = 0.0;
-    for (const MonteCarloResult& s : steps) mean += figure(s) / h;
-    for (const MonteCarloResult& s : steps) squares += std::pow(figure(s) - mean, 2);
-    return 2.0 * std::sqrt(squares / (h * (h - 1.0))) <= tolerance;
-  };
-  return settled([](const MonteCarloResult& s) { return s.mean; }) && settled([](const MonteCarloResult& s) { return s.standard_deviation; }) &&
-         settled([](const MonteCarloResult& s) { return s.symmetric.low95; }) && settled([](const MonteCarloResult& s) { return s.symmetric.high95; });
+void check(const MonteCarloOptions& options) {
+  if (!(options.coverage_probability >= 0.5 && options.coverage_probability <= 0.999)) {
+    throw InputError("coverage probability", "it lies outside 0.5 to 0.999");
+  }
+  if (!options.adaptive && options.draws < kFewestDraws) {
+    throw InputError("draws", "fewer than 1000 do not give an interval");
+  }
+  if (options.adaptive && options.most_draws < kFirstBatches * batch_size(options.coverage_probability)) {
+    throw InputError("most_draws", "fewer than " +
+                                       std::to_string(kFirstBatches * batch_size(options.coverage_probability)) +
+                                       " cannot show whether the results are stable");
+  }
+  if (options.significant_digits != 1 && options.significant_digits != 2) {
+    throw InputError("significant digits", "neither 1 nor 2");
+  }
 }
 
 }  // namespace
 
-MonteCarloResult propagate_by_monte_carlo(const std::vector<RandomInput>& inputs, const std::vector<Correlation>& correlations,
-                                          const BlockModel& model, const MonteCarloOptions& options) {
-  check(inputs, options);
-  const std::optional<Eigen::MatrixXd> root = correlation_root(inputs.size(), correlations);
-  const std::vector<Transform> transforms(inputs.begin(), inputs.end());
-  std::vector<double> values(options.draws);
-  draw(transforms, root, model, options, 0, values);
-  if (!options.adaptive) return summarise(values, options.shortest);
-
-  // Steps begin at multiples of the block size, so that no two share a random stream.
-  const std::size_t stride = (options.draws + kBlockSize - 1) / kBlockSize * kBlockSize;
-  std::vector<MonteCarloResult> steps;
-  std::vector<double> step = values;
-  steps.push_back(summarise(step, false));
-  while (steps.size() < kMostSteps && !stable(steps, numerical_tolerance(steps.front().standard_deviation, 2))) {
-    step.resize(options.draws);
-    draw(transforms, root, model, options, steps.size() * stride, step);
-    values.insert(values.end(), step.begin(), step.end());
-    steps.push_back(summarise(step, false));
-  }
-  return summarise(values, options.shortest);
+BlockModel block_model(Model model) {
+  return [model = std::move(model)](std::span<const std::span<const double>> inputs, std::span<double> result) {
+    std::vector<double> point(inputs.size());
+    for (std::size_t k = 0; k < result.size(); ++k) {
+      for (std::size_t i = 0; i < inputs.size(); ++i) point[i] = inputs[i][k];
+      try {
+        result[k] = model(point);
+      } catch (const Error&) {  // outside the domain of the model
+        result[k] = std::numeric_limits<double>::quiet_NaN();
+      }
+    }
+  };
 }
 
-bool intervals_agree(const Interval& gum, const Interval& monte_carlo, double standard_uncertainty, int digits) {
-  const double tolerance = numerical_tolerance(standard_uncertainty, digits);
-  return std::abs(gum.low95 - monte_carlo.low95) <= tolerance && std::abs(gum.high95 - monte_carlo.high95) <= tolerance;
+MonteCarlo monte_carlo(const BlockModel& model, const std::vector<ModelInput>& inputs,
+                       const std::vector<Correlation>& correlations, const MonteCarloOptions& options) {
+  check(options);
+  const InputDraws draws(inputs, correlations, options.seed);
+  Values values(model, draws, options, options.adaptive ? options.most_draws : options.draws);
+
+  MonteCarlo result;
+  if (options.adaptive) {
+    result.stable = draw_until_stable(values, options);
+  } else {
+    values.extend_to(options.draws);
+  }
+  const Moments all = values.moments_of(0, values.made());
+  result.draws = all.size;
+  result.rejected = values.made() - all.size;
+  if (2 * all.size < values.made()) {
+    throw DomainError("model", "it has no finite value for " + std::to_string(result.rejected) + " of " +
+                                   std::to_string(values.made()) + " draws");
+  }
+  const auto order = detail::order_statistics(values.compact(), options.coverage_probability, options.threads);
+  result.mean = all.mean;
+  result.sd = all.sd();
+  result.median = order.median;
+  result.symmetric = order.symmetric;
+  result.shortest = order.shortest;
+  result.coverage_probability = options.coverage_probability;
+  result.seed = options.seed;
+  if (result.rejected > 0) {
+    add_finding(result.findings,
+                {"monte_carlo_draws_rejected", Severity::warning,
+                 "the model has no value for " + std::to_string(result.rejected) + " of " +
+                     std::to_string(values.made()) + " draws; they were left out",
+                 static_cast<double>(result.rejected) / static_cast<double>(values.made())});
+  }
+  if (!result.stable) {
+    add_finding(result.findings, {"monte_carlo_not_stable", Severity::warning,
+                                  "the results were not stable to the digits asked for after " +
+                                      std::to_string(values.made()) + " draws"});
+  }
+  return result;
+}
+
+double numerical_tolerance(double standard_uncertainty, int significant_digits) {
+  if (!(standard_uncertainty > 0.0) || !std::isfinite(standard_uncertainty)) {
+    throw InputError("standard uncertainty", "it is not a number > 0");
+  }
+  if (significant_digits < 1 || significant_digits > 15) throw InputError("significant digits", "outside 1 to 15");
+  // u = c 10^l with c of so many digits; rounding up may add a digit.
+  int l = static_cast<int>(std::floor(std::log10(standard_uncertainty))) - (significant_digits - 1);
+  if (std::round(standard_uncertainty / std::pow(10.0, l)) >= std::pow(10.0, significant_digits)) ++l;
+  return 0.5 * std::pow(10.0, l);
+}
+
+IntervalAgreement compare_intervals(const CoverageInterval& gum, const CoverageInterval& draws,
+                                    double standard_uncertainty, int significant_digits) {
+  IntervalAgreement result;
+  result.tolerance = numerical_tolerance(standard_uncertainty, significant_digits);
+  result.low_difference = std::abs(gum.low - draws.low);
+  result.high_difference = std::abs(gum.high - draws.high);
+  result.agree = result.low_difference <= result.tolerance && result.high_difference <= result.tolerance;
+  return result;
 }
 
 }  // namespace pellicle

@@ -1,20 +1,36 @@
 #pragma once
-/// What an undetected or barely detected peak still says.
+/// Whether a line is there at all, and what a line that is not seen still says.
+///
+/// Counts N of a peak over a background of B counts that is measured in as many channels as the peak ("paired
+/// observations"), 5 % risk of either error, Poisson counting [currie1968]:
+///
+///   decision level   2.33 √B           a net area above it is a signal
+///   detection limit  2.71 + 4.65 √B    a true net area of this size is found in 95 of 100 measurements
+///
+/// A net area a with standard deviation s may come out negative, the true one A may not. With a normal likelihood and
+/// nothing known of A but A >= 0, A has the normal distribution of mean a and standard deviation s cut off at zero; its
+/// quantiles are the bounds below.
 
 namespace pellicle {
 
-/// Decision level of a net area over a background of `background_counts` taken from an equal window: 2.33 √B counts.
-/// A peak above it counts as detected (5 % false alarms). @cite currie1968
-[[nodiscard]] double decision_level_counts(double background_counts) noexcept;
+/// 2.33 √B, net counts. The factor is 1.645 √2, rounded as published.
+/// @param background_counts B >= 0; the approximation of a normal distribution wants B above about 30
+/// @throws InputError @cite currie1968 (table II)
+[[nodiscard]] double decision_level_counts(double background_counts);
 
-/// Detection limit 2.71 + 4.65 √B counts: the true signal that is detected 95 times in 100. @cite currie1968
-[[nodiscard]] double detection_limit_counts(double background_counts) noexcept;
+/// 2.71 + 4.65 √B, net counts. The numbers are 1.645² and 2 · 1.645 √2, rounded as published.
+/// @param background_counts B >= 0 @throws InputError @cite currie1968 (table II)
+[[nodiscard]] double detection_limit_counts(double background_counts);
 
-/// The 95 % quantile of the true signal given a measured one and the knowledge that it is not negative: normal
-/// likelihood, flat on >= 0. Closed form u = a + s z, Φ(−z) = 0.05 Φ(a/s); relative error below 1e-9 for a/s down
-/// to −30, below 1 % beyond.
-/// @param area measured value, may be negative @param standard_uncertainty > 0, same unit
-/// @return upper bound, > 0, same unit @throws InputError for arguments out of range
-[[nodiscard]] double upper_bound_95(double area, double standard_uncertainty);
+/// The value that the truth exceeds with a probability of 5 % only, given a measured area and truth >= 0. Any unit; the
+/// same for ratios, or anything else that is measured with normal spread and cannot be negative.
+/// Relative error below 1e-12, also far below zero: area = −1000 sd gives 2.996e-3 sd, not zero.
+/// @param area measured, may be negative @param sd its standard deviation, >= 0
+/// @return > 0; max(area, 0) for sd = 0 @throws InputError for arguments that are not finite, or sd < 0
+/// @cite johnson1994
+[[nodiscard]] double upper_bound_95(double area, double sd);
+
+/// The value that the truth exceeds with a probability of 95 %. Same arguments, errors and accuracy as upper_bound_95.
+[[nodiscard]] double lower_bound_95(double area, double sd);
 
 }  // namespace pellicle

@@ -41,4 +41,5 @@
 #include "pellicle/io/result_json.hpp"
 #include "pellicle/io/run_file.hpp"
 #include "pellicle/io/starter.hpp"
+#include "pellicle/report/figure.hpp"
 #include "pellicle/report/text.hpp"

@@ -65,7 +65,7 @@ TabulatedValue photoionisation_cross_section_barn(const CoreLevel& level, const 
   static const Table table = load("photoionisation", "level", "_barn", true);
   const auto refused = [&](const std::string& reason) { return refuse("reliable cross section", level, source, reason, "; give sensitivity"); };
   const std::optional<std::size_t> column = column_of(source);
-  if (!column) return refused("tabulated at the five laboratory photon energies only");
+  if (!column) return refused("tabulated for the photon energy of five laboratory sources only");
   TabulatedValue result{0.0, {}, {}, {}};
   for (const std::string& member : level.levels) {
     const auto found = table.find({level.element->z, member});
@@ -86,7 +86,7 @@ TabulatedValue asymmetry_parameter(const CoreLevel& level, const PhotonSource& s
   if (level.subshell.back() == 's') return {2.0, {}, {}, "cooper1968"};
   static const Table table = load("asymmetry", "subshell", "", false);
   const std::optional<std::size_t> column = column_of(source);
-  if (!column) return refuse("asymmetry parameter", level, source, "tabulated at the five laboratory photon energies only", "");
+  if (!column) return refuse("asymmetry parameter", level, source, "tabulated for the photon energy of five laboratory sources only", "");
   const auto found = table.find({level.element->z, level.subshell});
   if (found == table.end() || !found->second.values[*column]) return refuse("asymmetry parameter", level, source, "not tabulated", "");
   return {found->second.values[*column], {}, {}, found->second.source};

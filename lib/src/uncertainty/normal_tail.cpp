@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <boost/math/special_functions/erf.hpp>
 #include <cmath>
+#include <limits>
 #include <numbers>
 
 namespace pellicle::detail {
@@ -31,7 +32,12 @@ double normal_above(double z) { return 0.5 * std::erfc(z / std::numbers::sqrt2);
 double normal_quantile(double p) { return -std::numbers::sqrt2 * boost::math::erfc_inv(2.0 * p); }
 
 double normal_excess(double alpha, double log_q) {
-  if (alpha < kTail) return std::max(0.0, -normal_quantile(std::exp(log_q) * normal_above(alpha)) - alpha);
+  // A probability of 0 or 1 has no quantile; next to them it has one, and no draw can tell the difference.
+  constexpr double kLargest = 1.0 - std::numeric_limits<double>::epsilon();
+  if (alpha < kTail) {
+    const double p = std::clamp(std::exp(log_q) * normal_above(alpha), std::numeric_limits<double>::min(), kLargest);
+    return std::max(0.0, -normal_quantile(p) - alpha);
+  }
   // −ln of both sides: α d + d²/2 + ln m(α) − ln m(α + d) = −ln q with the Mills ratio m. The left side rises with slope
   // 1/m(α + d) and is convex, so Newton steps from the right, d = −ln q/α, stay there and converge.
   double d = -log_q / alpha;

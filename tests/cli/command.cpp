@@ -13,7 +13,7 @@
 namespace pellicle::test {
 
 CommandResult pellicle_command(const std::vector<std::string>& arguments, const std::string& folder,
-                               const std::string& input) {
+                               const std::string& input, const std::string& output) {
   // Files instead of pipes: a command that fills one stream cannot stall on the other.
   const ScratchFolder scratch;
   const std::string in = scratch.write("in", input), out = scratch.write("out", ""), err = scratch.write("err", "");
@@ -26,7 +26,7 @@ CommandResult pellicle_command(const std::vector<std::string>& arguments, const 
   const pid_t child = ::fork();
   if (child < 0) throw std::runtime_error("fork failed");
   if (child == 0) {
-    const int fd_in = ::open(in.c_str(), O_RDONLY), fd_out = ::open(out.c_str(), O_WRONLY),
+    const int fd_in = ::open(in.c_str(), O_RDONLY), fd_out = ::open((output.empty() ? out : output).c_str(), O_WRONLY),
               fd_err = ::open(err.c_str(), O_WRONLY);
     const bool ready =
         ::dup2(fd_in, 0) == 0 && ::dup2(fd_out, 1) == 1 && ::dup2(fd_err, 2) == 2 && ::chdir(folder.c_str()) == 0;

@@ -12,9 +12,10 @@ struct CommandResult {
   std::string err;  ///< standard error
 };
 
-/// Runs `pellicle arguments…` in `folder` with `input` on standard input.
+/// Runs `pellicle arguments…` in `folder` with `input` on standard input. Standard output goes to `output` instead of
+/// the result when one is named; it is opened as a shell would and never replaced.
 [[nodiscard]] CommandResult pellicle_command(const std::vector<std::string>& arguments, const std::string& folder = ".",
-                                             const std::string& input = "");
+                                             const std::string& input = "", const std::string& output = "");
 
 /// Lines of a text; a last line without its line break counts.
 [[nodiscard]] std::vector<std::string> text_lines(const std::string& text);

@@ -459,7 +459,9 @@ TEST_CASE("an inline material needs no catalogue") {
 
 TEST_CASE("a full standard output is an error and not a silent loss") {
   if (!fs::exists("/dev/full")) return;  // only Linux has this device
-  check_one_line(pellicle_command(kSilica + Words{"--out", "/dev/full"}), 3, "/dev/full");
+  for (const Words& words : {kSilica, kSilica + Words{"--json"}, Words{"materials"}, Words{"lines", "--sources"}}) {
+    check_one_line(pellicle_command(words, ".", "", "/dev/full"), 3, "standard output");
+  }
 }
 
 }  // TEST_SUITE("command line")

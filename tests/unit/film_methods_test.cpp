@@ -121,6 +121,34 @@ TEST_CASE("sensitivities of a single line are the slopes of the thickness") {
   }
 }
 
+TEST_CASE("an error common to both areas of a ratio cancels and an opposed one doubles") {
+  // 3 % each: together 0 or 6 % of the ratio, and ∂t/∂ln R = L cosθ r/(1 + r). Invented numbers.
+  FilmMeasurement m;
+  m.factors = {{"film_area", Quantity(900.0, 27.0), 1.0, ContributionKind::repeatability, true},
+               {"substrate_area", Quantity(600.0, 18.0), -1.0, ContributionKind::repeatability, true}};
+  m.film_line_length_nm = 2.0;
+  const double slope = 2.0 * 1.5 / 2.5;
+  m.correlations = {{"film_area", "substrate_area", 1.0}};
+  CHECK(thickness_from_factors(m).standard_uncertainty_nm < 1e-8);
+  m.correlations[0].coefficient = -1.0;
+  CHECK(close_to(thickness_from_factors(m).standard_uncertainty_nm, 0.06 * slope, rel(1e-12)));
+  m.correlations[0].coefficient = 0.0;
+  CHECK(close_to(thickness_from_factors(m).standard_uncertainty_nm, 0.03 * std::sqrt(2.0) * slope, rel(1e-12)));
+  m.correlations[0].second = "no such area";
+  CHECK_THROWS_AS((void)thickness_from_factors(m), InputError);
+}
+
+TEST_CASE("a factor counts as often as its power says") {
+  // 1.2² in the ratio, and twice its relative uncertainty. Invented numbers.
+  FilmMeasurement m;
+  m.factors = {{"ratio", 1.5, 1.0, ContributionKind::repeatability, true}, {"factor", Quantity(1.2, 0.012), 2.0}};
+  m.film_line_length_nm = 2.0;
+  const Thickness t = thickness_from_factors(m);
+  const double r = 1.5 * 1.2 * 1.2;
+  CHECK(close_to(t.value_nm, 2.0 * std::log1p(r), rel(1e-14)));
+  CHECK(close_to(t.standard_uncertainty_nm, 2.0 * 0.01 * 2.0 * r / (1.0 + r), rel(1e-12)));
+}
+
 TEST_CASE("a line stronger or weaker than its reference allows has no thickness but a bound") {
   const auto refused = [](const FilmMeasurement& m) {
     return error_of<DomainError>([&] { (void)thickness_from_factors(m); }).hint();

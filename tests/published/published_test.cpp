@@ -14,6 +14,7 @@
 #include <string>
 
 #include "pellicle/pellicle.hpp"
+#include "published/uncertainty_engine.hpp"
 #include "support/check_rows.hpp"
 #include "support/close_to.hpp"
 
@@ -257,7 +258,8 @@ double correlated_percent(const RowInputs& in) {
 using Function = std::function<double(const RowInputs&)>;
 
 const std::map<std::string, Function>& functions() {
-  static const std::map<std::string, Function> all = {
+  static const std::map<std::string, Function> all = [] {
+    std::map<std::string, Function> known = {
       {"atom_density_per_nm3", atom_density},
       {"atom_density_ratio", atom_density_ratio},
       {"binding_energy_ev", binding_energy},
@@ -299,7 +301,10 @@ const std::map<std::string, Function>& functions() {
       {"relative_sensitivity_film_length", film_length_slope},
       {"relative_sensitivity_substrate_length", substrate_length_slope},
       {"combined_relative_sd_percent", correlated_percent},
-  };
+    };
+    known.insert(test::uncertainty_engine_functions().begin(), test::uncertainty_engine_functions().end());
+    return known;
+  }();
   return all;
 }
 

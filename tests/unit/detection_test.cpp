@@ -28,9 +28,7 @@ constexpr double kOneSided95 = 1.6448536269514722;
 /// The bound by brute force: normal likelihood exp(−(x − a)²/2) over x >= 0, integrated in pieces and searched.
 double bound_by_quadrature(double a, double exceeded) {
   // Divided by its value at 0 where a lies below, so that nothing underflows.
-  const auto likelihood = [&](double x) {
-    return std::exp(-0.5 * (a < 0.0 ? x * (x - 2.0 * a) : (x - a) * (x - a)));
-  };
+  const auto likelihood = [&](double x) { return std::exp(-0.5 * (a < 0.0 ? x * (x - 2.0 * a) : (x - a) * (x - a))); };
   const double width = a < -1.0 ? -1.0 / a : 1.0;  // scale on which it falls
   const auto area = [&](double from, double to) {
     double sum = 0.0;
@@ -38,16 +36,16 @@ double bound_by_quadrature(double a, double exceeded) {
     for (int i = 0; i < pieces; ++i) {
       const double step = (to - from) / pieces;
       sum += boost::math::quadrature::gauss_kronrod<double, 31>::integrate(likelihood, from + i * step,
-                                                                         from + (i + 1) * step, 0, 0);
+                                                                           from + (i + 1) * step, 0, 0);
     }
     return sum;
   };
   const double end = std::max(0.0, a) + 40.0 * width;
   const double whole = area(0.0, end);
   std::uintmax_t steps = 200;
-  const auto [low, high] = boost::math::tools::toms748_solve(
-      [&](double x) { return area(x, end) / whole - exceeded; }, 0.0, end, boost::math::tools::eps_tolerance<double>(50),
-      steps);
+  const auto [low, high] =
+      boost::math::tools::toms748_solve([&](double x) { return area(x, end) / whole - exceeded; }, 0.0, end,
+                                        boost::math::tools::eps_tolerance<double>(50), steps);
   return 0.5 * (low + high);
 }
 

@@ -44,6 +44,8 @@ std::vector<Named> examples() {
           {"counts", Distribution::poisson_count(20000.0)},
           {"truncated above", Distribution::truncated_normal(2.0, 1.0)},
           {"truncated in the middle", Distribution::truncated_normal(0.0, 3.0)},
+          {"hardly truncated", Distribution::truncated_normal(10.0, 1.0)},
+          {"not truncated", Distribution::truncated_normal(1000.0, 1.0)},
           {"truncated below", Distribution::truncated_normal(-7.0, 1.0)},
           {"truncated far below", Distribution::truncated_normal(-30.0, 1.0)}};
 }

@@ -43,7 +43,8 @@ void same(Columns x, std::span<double> y) { std::copy(x[0].begin(), x[0].end(), 
 
 bool same_bits(const MonteCarlo& a, const MonteCarlo& b) {
   const auto numbers = [](const MonteCarlo& m) {
-    return std::vector<double>{m.mean, m.sd, m.median, m.symmetric.low, m.symmetric.high, m.shortest.low, m.shortest.high};
+    return std::vector<double>{m.mean,           m.sd,           m.median,       m.symmetric.low,
+                               m.symmetric.high, m.shortest.low, m.shortest.high};
   };
   return a.draws == b.draws && a.rejected == b.rejected && test::same_bits(numbers(a), numbers(b));
 }
@@ -115,8 +116,8 @@ TEST_CASE("neither threads nor their number change a bit") {
     for (std::size_t k = 0; k < y.size(); ++k) y[k] = std::log(x[0][k] / x[1][k]) * x[2][k];
   };
   // The logarithm of a negative ratio is not a number; some draws are rejected, in each block others.
-  const std::vector<ModelInput> inputs = {normal(1.0, 0.4), {"b", Distribution::lognormal(2.0, 0.3)},
-                                          {"c", Distribution::rectangular(0.0, 1.0)}};
+  const std::vector<ModelInput> inputs = {
+      normal(1.0, 0.4), {"b", Distribution::lognormal(2.0, 0.3)}, {"c", Distribution::rectangular(0.0, 1.0)}};
   for (const bool adaptive : {false, true}) {
     MonteCarloOptions options = options_with(3 * kBlockSize * 30 + 17, 5, 1);
     options.adaptive = adaptive;
@@ -145,6 +146,33 @@ TEST_CASE("means of other seeds scatter as their standard error says") {
   CHECK(std::abs(squares - runs) / std::sqrt(2.0 * runs) < kUnlikely);
 }
 
+TEST_CASE("mean and spread and intervals are those of the values drawn") {
+  // One thread takes the blocks in their order, so the values can be written down; the last block is short. A small
+  // sample, in which n and n − 1 differ.
+  std::vector<double> values;
+  const BlockModel recorded = [&](Columns x, std::span<double> y) {
+    same(x, y);
+    values.insert(values.end(), y.begin(), y.end());
+  };
+  for (const std::size_t draws : {std::size_t{1000}, 9 * kBlockSize + 7}) {
+    values.clear();
+    const MonteCarlo m = monte_carlo(recorded, {normal(1.0, 1.0)}, {}, options_with(draws, 3, 1));
+    REQUIRE(values.size() == draws);
+    long double sum_of_values = 0.0L, squares = 0.0L;
+    for (const double v : values) sum_of_values += v;
+    const long double mean = sum_of_values / static_cast<long double>(draws);
+    for (const double v : values) squares += (v - mean) * (v - mean);
+    CHECK(close_to(m.mean, static_cast<double>(mean), rel(1e-13)));
+    CHECK(close_to(m.sd, static_cast<double>(std::sqrt(squares / static_cast<long double>(draws - 1))), rel(1e-13)));
+    const auto expected = by_definition(values, 0.95);
+    CHECK(m.median == expected.median);
+    CHECK(m.symmetric.low == expected.symmetric.low);
+    CHECK(m.symmetric.high == expected.symmetric.high);
+    CHECK(m.shortest.low == expected.shortest.low);
+    CHECK(m.shortest.high == expected.shortest.high);
+  }
+}
+
 TEST_CASE("a small spread on a large value keeps its digits") {
   const MonteCarlo m = monte_carlo(sum, {normal(1e9, 1.0), {"c", Distribution::constant(3.0)}});
   CHECK(close_to(m.mean, 1e9 + 3.0, test::abs(kUnlikely * 1e-3)));
@@ -166,15 +194,16 @@ TEST_CASE("correlated inputs are correlated as asked") {
 }
 
 TEST_CASE("correlated inputs keep their own distributions") {
-  const std::vector<ModelInput> inputs = {{"a", Distribution::rectangular(2.0, 3.0)}, {"b", Distribution::gamma(1.0, 0.8)},
+  const std::vector<ModelInput> inputs = {{"a", Distribution::rectangular(2.0, 3.0)},
+                                          {"b", Distribution::gamma(1.0, 0.8)},
                                           {"c", Distribution::constant(5.0)}};
   const std::vector<Correlation> r = {{0, 1, 0.9}, {2, 0, 0.5}};  // a constant correlates with nothing
   const MonteCarlo a = monte_carlo(same, inputs, r);
   CHECK(close_to(a.mean, 2.5, test::abs(kUnlikely * 0.29e-3)));
   CHECK(close_to(a.sd, 1.0 / std::sqrt(12.0), rel(1e-3)));
   CHECK(close_to(a.symmetric.low, 2.025, test::abs(kUnlikely * 0.16e-3)));
-  const MonteCarlo b = monte_carlo([](Columns x, std::span<double> y) { std::copy(x[1].begin(), x[1].end(), y.begin()); },
-                                   inputs, r);
+  const MonteCarlo b =
+      monte_carlo([](Columns x, std::span<double> y) { std::copy(x[1].begin(), x[1].end(), y.begin()); }, inputs, r);
   CHECK(close_to(b.mean, 1.0, test::abs(kUnlikely * 0.8e-3)));
   CHECK(close_to(b.sd, 0.8, rel(5e-3)));
 }
@@ -192,8 +221,9 @@ TEST_CASE("the logarithms of lognormal inputs have the correlation that was aske
 
 TEST_CASE("correlations that cannot be together are refused") {
   const std::vector<ModelInput> three = {normal(0.0, 1.0), normal(0.0, 1.0), normal(0.0, 1.0)};
-  CHECK(error_of<InputError>([&] { (void)monte_carlo(sum, three, {{0, 1, 0.9}, {1, 2, 0.9}, {0, 2, -0.9}}); }).where() ==
-        "correlation");
+  CHECK(error_of<InputError>([&] {
+          (void)monte_carlo(sum, three, {{0, 1, 0.9}, {1, 2, 0.9}, {0, 2, -0.9}});
+        }).where() == "correlation");
   CHECK_THROWS_AS((void)monte_carlo(sum, three, {{0, 1, 1.1}}), InputError);
   CHECK_THROWS_AS((void)monte_carlo(sum, three, {{0, 3, 0.1}}), InputError);
   CHECK_THROWS_AS((void)monte_carlo(sum, three, {{0, 1, 0.9}, {1, 0, 0.9}}), InputError);
@@ -256,9 +286,9 @@ TEST_CASE("order statistics are those of the definition for any sample") {
     std::vector<double> z(size);
     stream.fill_normal(z);
     std::vector<double> rounded = z, clamped = z, sorted = z, falling, outliers = z;
-    for (double& v : rounded) v = std::round(4.0 * v) / 4.0;       // many ties
-    for (double& v : clamped) v = std::max(0.0, v);                // half of it in one point
-    for (double& v : outliers) v = std::exp(v * v);                // heavy tail
+    for (double& v : rounded) v = std::round(4.0 * v) / 4.0;  // many ties
+    for (double& v : clamped) v = std::max(0.0, v);           // half of it in one point
+    for (double& v : outliers) v = std::exp(v * v);           // heavy tail
     std::sort(sorted.begin(), sorted.end());
     falling.assign(sorted.rbegin(), sorted.rend());
     for (const auto& sample : {z, rounded, clamped, sorted, falling, outliers, std::vector<double>(size, 2.0)}) {
@@ -299,7 +329,7 @@ TEST_CASE("adaptive draws end when two digits are stable") {
   CHECK(m.stable);
   CHECK(m.findings.empty());
   // u = 0.34 to two digits: δ = 0.005. Ends of the interval: 2 · 0.34 · 2.67/√n <= 0.005 wants about 130,000.
-  CHECK(m.draws >= 90'000);
+  CHECK(m.draws > 8 * 3 * kBlockSize);
   CHECK(m.draws <= 300'000);
   CHECK(close_to(m.sd, 0.34, test::abs(0.005)));
   CHECK(close_to(m.symmetric.low, 10.0 - 1.96 * 0.34, test::abs(0.005)));
@@ -368,7 +398,7 @@ TEST_CASE("progress is told on the calling thread") {
 
 TEST_CASE("progress can end the work") {
   for (const unsigned threads : {1U, 3U}) {
-    MonteCarloOptions options = options_with(20'000 * kBlockSize, 1, threads);
+    MonteCarloOptions options = options_with(10'000 * kBlockSize, 1, threads);
     std::size_t calls = 0;
     options.progress = [&](std::size_t, std::size_t) { return ++calls < 3; };
     std::atomic<std::size_t> blocks{0};
@@ -378,7 +408,7 @@ TEST_CASE("progress can end the work") {
     };
     CHECK_THROWS_AS((void)monte_carlo(counted, {normal(0.0, 1.0)}, {}, options), Cancelled);
     CHECK(calls == 3);
-    CHECK(blocks < 20'000);
+    CHECK(blocks < 10'000);
     if (threads == 1) CHECK(blocks == 3);
   }
 }

@@ -42,7 +42,8 @@ TEST_CASE("sensitivities are the derivatives of the model") {
   CHECK(close_to(slope([](double x) { return std::log(x); }, 3e-6, 1e-7), 1.0 / 3e-6, rel(kDerivative)));
   CHECK(close_to(slope([](double x) { return std::sqrt(x); }, 1e8, 3e7), 0.5e-4, rel(kDerivative)));
   CHECK(close_to(slope([](double x) { return 1.0 / x; }, -7.0, 1e-9), -1.0 / 49.0, rel(kDerivative)));
-  CHECK(close_to(slope([](double x) { return std::tan(x); }, 1.5, 0.01), 1.0 / std::pow(std::cos(1.5), 2), rel(kDerivative)));
+  CHECK(close_to(slope([](double x) { return std::tan(x); }, 1.5, 0.01), 1.0 / std::pow(std::cos(1.5), 2),
+                 rel(kDerivative)));
   CHECK(close_to(slope([](double x) { return std::sin(x); }, 0.0, 1e-3), 1.0, rel(kDerivative)));
   CHECK(close_to(slope([](double x) { return x * x * x; }, 0.0, 1.0), 0.0, test::abs(1e-12)));
   // A spread as large as the mean: the widest steps leave the domain or come near its edge.
@@ -70,10 +71,9 @@ TEST_CASE("a model that throws or has no value outside its domain is probed insi
 
 TEST_CASE("the budget is the combination of sensitivities and standard deviations") {
   const Model model = [](Inputs x) { return x[0] * x[1] / x[2]; };
-  const std::vector<ModelInput> inputs = {
-      {"a", Distribution::lognormal(2.0, 0.1), ContributionKind::scale},
-      {"b", Distribution::rectangular(2.9, 3.1)},
-      {"c", Distribution::constant(4.0)}};
+  const std::vector<ModelInput> inputs = {{"a", Distribution::lognormal(2.0, 0.1), ContributionKind::scale},
+                                          {"b", Distribution::rectangular(2.9, 3.1)},
+                                          {"c", Distribution::constant(4.0)}};
   const std::vector<Correlation> correlations = {{0, 1, -0.4}};
   const Propagation p = propagate(model, inputs, correlations);
   CHECK(p.value == 1.5);
@@ -120,8 +120,8 @@ TEST_CASE("second order terms contain the third derivatives") {
   // x³: (3x²u)² + ½(6x)²u⁴ + 3x²·6 u⁴.
   const double x = 2.0, u = 0.1;
   const auto cube = propagate([](Inputs v) { return v[0] * v[0] * v[0]; }, {input(x, u)}, {}, second);
-  CHECK(close_to(cube.standard_uncertainty,
-                 std::sqrt(9.0 * std::pow(x, 4) * u * u + 36.0 * x * x * std::pow(u, 4)), rel(1e-6)));
+  CHECK(close_to(cube.standard_uncertainty, std::sqrt(9.0 * std::pow(x, 4) * u * u + 36.0 * x * x * std::pow(u, 4)),
+                 rel(1e-6)));
   // x y²: first order y⁴u² + 4x²y²v²; second: both mixed pairs ½(2y)²u²v², ½(2x)²v⁴, and y²·2 u²v².
   const double y = 3.0, v = 0.4;
   const auto mixed = propagate([](Inputs w) { return w[0] * w[1] * w[1]; }, {input(x, u), input(y, v)}, {}, second);
@@ -133,15 +133,16 @@ TEST_CASE("second order terms contain the third derivatives") {
 TEST_CASE("effective degrees of freedom are those of Welch and Satterthwaite") {
   // Equal parts of equal degrees of freedom add up; a part known for certain raises them with the fourth power.
   const Model sum = [](Inputs x) { return x[0] + 2.0 * x[1]; };
-  CHECK(close_to(propagate(sum, {input(0.0, 2.0, 5.0), input(0.0, 1.0, 5.0)}).effective_degrees_of_freedom.value(), 10.0,
-                 rel(1e-7)));
+  CHECK(close_to(propagate(sum, {input(0.0, 2.0, 5.0), input(0.0, 1.0, 5.0)}).effective_degrees_of_freedom.value(),
+                 10.0, rel(1e-7)));
   const Propagation certain = propagate(sum, {input(0.0, 2.0, 5.0), input(0.0, 1.0)});
   CHECK(close_to(certain.effective_degrees_of_freedom.value(), 20.0, rel(1e-7)));
   // t of 19 or 20 degrees, cut to an integer; both bracket the rounding of 20.
   CHECK(certain.coverage_factor > 2.085);
   CHECK(certain.coverage_factor < 2.094);
   CHECK(std::isinf(propagate(sum, {input(0.0, 2.0), input(0.0, 1.0)}).effective_degrees_of_freedom.value()));
-  CHECK(std::isinf(propagate(sum, {input(0.0, 2.0), input(0.0, 1.0)}, {{0, 1, 0.5}}).effective_degrees_of_freedom.value()));
+  CHECK(std::isinf(
+      propagate(sum, {input(0.0, 2.0), input(0.0, 1.0)}, {{0, 1, 0.5}}).effective_degrees_of_freedom.value()));
   CHECK_FALSE(propagate(sum, {input(0.0, 2.0, 5.0), input(0.0, 1.0)}, {{0, 1, 0.5}}).effective_degrees_of_freedom);
   // 7.9 degrees count as 7: 2.365, not 2.31.
   const Propagation cut = propagate(sum, {input(0.0, 2.0, 3.95), input(0.0, 1.0, 3.95)});
@@ -170,8 +171,7 @@ TEST_CASE("a coverage probability asked for is used") {
 }
 
 TEST_CASE("a model of constants has a value and no uncertainty") {
-  const Propagation p =
-      propagate([](Inputs x) { return x[0] + 1.0; }, {{"c", Distribution::constant(2.0)}}, {}, {});
+  const Propagation p = propagate([](Inputs x) { return x[0] + 1.0; }, {{"c", Distribution::constant(2.0)}}, {}, {});
   CHECK(p.value == 3.0);
   CHECK(p.standard_uncertainty == 0.0);
   CHECK(p.interval.low == 3.0);
@@ -183,7 +183,8 @@ TEST_CASE("arguments that cannot be are refused") {
   const Model model = [](Inputs x) { return x[0] + x[1]; };
   const std::vector<ModelInput> two = {input(1.0, 1.0), input(1.0, 1.0)};
   for (const double bad : {0.0, -1.0, kNan}) {
-    CHECK(error_of<InputError>([&] { (void)propagate(model, {input(1.0, 1.0, bad), input(1.0, 1.0)}); }).where() == "x");
+    CHECK(error_of<InputError>([&] { (void)propagate(model, {input(1.0, 1.0, bad), input(1.0, 1.0)}); }).where() ==
+          "x");
     CHECK_THROWS_AS((void)coverage_factor(0.95, bad), InputError);
   }
   for (const double bad : {0.0, 1.0, -0.5, kNan}) {

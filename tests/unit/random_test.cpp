@@ -20,8 +20,8 @@ namespace {
 
 constexpr std::size_t kGroup = RandomStream::kGroup;
 constexpr std::size_t kMany = 1'000'000;
-/// Deviation, in its own standard deviations, that a fair generator exceeds once in 15,000 times. The seeds are fixed, so
-/// that a test that passes once passes always.
+/// Deviation, in its own standard deviations, that a fair generator exceeds once in 15,000 times. The seeds are fixed,
+/// so that a test that passes once passes always.
 constexpr double kUnlikely = 4.0;
 
 std::vector<double> normals(std::uint64_t seed, std::uint64_t block, std::size_t size) {

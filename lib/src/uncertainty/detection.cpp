@@ -28,9 +28,7 @@ double exceeded(double area, double sd, double q) {
 
 double decision_level_counts(double background_counts) { return 2.33 * root_of_background(background_counts); }
 
-double detection_limit_counts(double background_counts) {
-  return 2.71 + 4.65 * root_of_background(background_counts);
-}
+double detection_limit_counts(double background_counts) { return 2.71 + 4.65 * root_of_background(background_counts); }
 
 double upper_bound_95(double area, double sd) { return exceeded(area, sd, 0.05); }
 

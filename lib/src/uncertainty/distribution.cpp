@@ -15,7 +15,7 @@
 namespace pellicle {
 namespace {
 
-constexpr double kWidestGamma = 3.0;        // sd/mean; beyond, the lower tail leaves the range of a double
+constexpr double kWidestGamma = 3.0;         // sd/mean; beyond, the lower tail leaves the range of a double
 constexpr double kDeepestTruncation = 30.0;  // standard deviations
 constexpr double kLargestZ = 9.0;            // probability beyond: 1e-19
 constexpr double kSmallestProbability = 1e-18;
@@ -126,13 +126,10 @@ Distribution Distribution::truncated_normal(double normal_mean, double normal_sd
           normal_sd};
 }
 
-Distribution Distribution::of(const Quantity& quantity) {
-  return normal(quantity.value, quantity.sd());
-}
+Distribution Distribution::of(const Quantity& quantity) { return normal(quantity.value, quantity.sd()); }
 
 double Distribution::quantile(double probability) const {
-  require(probability >= kSmallestProbability && probability < 1.0, kind_,
-          "the probability lies outside 1e-18 to 1");
+  require(probability >= kSmallestProbability && probability < 1.0, kind_, "the probability lies outside 1e-18 to 1");
   return at_normal(detail::normal_quantile(probability));
 }
 
@@ -147,13 +144,12 @@ double Distribution::at_normal(double z) const {
     case DistributionKind::triangular:
       return z < 0.0 ? a_ + (b_ - a_) * std::sqrt(0.5 * detail::normal_below(z))
                      : b_ - (b_ - a_) * std::sqrt(0.5 * detail::normal_above(z));
-    case DistributionKind::student_t:
-      return mean_ + b_ * boost_quantile(boost::math::students_t(a_), z);
+    case DistributionKind::student_t: return mean_ + b_ * boost_quantile(boost::math::students_t(a_), z);
     case DistributionKind::gamma:
     case DistributionKind::poisson_count: return boost_quantile(boost::math::gamma_distribution<>(a_, b_), z);
     case DistributionKind::truncated_normal:
-      return b_ * detail::normal_excess(-a_ / b_, z < 0.0 ? std::log1p(-detail::normal_below(z))
-                                                          : std::log(detail::normal_above(z)));
+      return b_ * detail::normal_excess(
+                      -a_ / b_, z < 0.0 ? std::log1p(-detail::normal_below(z)) : std::log(detail::normal_above(z)));
   }
   return mean_;
 }

@@ -67,7 +67,8 @@ Moments together(const Moments& a, const Moments& b) {
 /// singular, as it is for a coefficient of 1.
 Eigen::MatrixXd factor(const Eigen::MatrixXd& correlation) {
   const Eigen::SelfAdjointEigenSolver<Eigen::MatrixXd> solver(correlation);
-  if (solver.info() != Eigen::Success || solver.eigenvalues().minCoeff() < -1e-12 * static_cast<double>(correlation.rows())) {
+  if (solver.info() != Eigen::Success ||
+      solver.eigenvalues().minCoeff() < -1e-12 * static_cast<double>(correlation.rows())) {
     throw InputError("correlation", "no quantities can have these coefficients together");
   }
   return solver.eigenvectors() * solver.eigenvalues().cwiseMax(0.0).cwiseSqrt().asDiagonal();
@@ -129,7 +130,8 @@ class InputDraws {
   };
 
   /// The first `size` draws of a block. What is returned lives until the next call with the same buffer.
-  [[nodiscard]] std::span<const std::span<const double>> draw(std::size_t block, std::size_t size, Buffer& buffer) const {
+  [[nodiscard]] std::span<const std::span<const double>> draw(std::size_t block, std::size_t size,
+                                                              Buffer& buffer) const {
     RandomStream stream(seed_, block);
     for (const std::size_t i : independent_) samplers_[i].draw(stream, buffer.column(i, size));
     for (std::size_t j = 0; j < correlated_.size(); ++j)
@@ -183,8 +185,12 @@ class BufferPool {
 class Values {
  public:
   Values(const BlockModel& model, const InputDraws& draws, const MonteCarloOptions& options, std::size_t most)
-      : model_(model), draws_(draws), options_(options), pool_(draws),
-        values_(std::make_unique_for_overwrite<double[]>(most)), blocks_((most + kBlockSize - 1) / kBlockSize) {}
+      : model_(model),
+        draws_(draws),
+        options_(options),
+        pool_(draws),
+        values_(std::make_unique_for_overwrite<double[]>(most)),
+        blocks_((most + kBlockSize - 1) / kBlockSize) {}
 
   /// Draws until there are `planned` draws; all blocks before the last must have been whole.
   void extend_to(std::size_t planned) {
@@ -372,11 +378,10 @@ MonteCarlo monte_carlo(const BlockModel& model, const std::vector<ModelInput>& i
   result.coverage_probability = options.coverage_probability;
   result.seed = options.seed;
   if (result.rejected > 0) {
-    add_finding(result.findings,
-                {"monte_carlo_draws_rejected", Severity::warning,
-                 "the model has no value for " + std::to_string(result.rejected) + " of " +
-                     std::to_string(values.made()) + " draws; they were left out",
-                 static_cast<double>(result.rejected) / static_cast<double>(values.made())});
+    add_finding(result.findings, {"monte_carlo_draws_rejected", Severity::warning,
+                                  "the model has no value for " + std::to_string(result.rejected) + " of " +
+                                      std::to_string(values.made()) + " draws; they were left out",
+                                  static_cast<double>(result.rejected) / static_cast<double>(values.made())});
   }
   if (!result.stable) {
     add_finding(result.findings, {"monte_carlo_not_stable", Severity::warning,

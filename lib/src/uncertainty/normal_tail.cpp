@@ -3,7 +3,6 @@
 #include <algorithm>
 #include <boost/math/special_functions/erf.hpp>
 #include <cmath>
-#include <limits>
 #include <numbers>
 
 namespace pellicle::detail {
@@ -32,14 +31,15 @@ double normal_above(double z) { return 0.5 * std::erfc(z / std::numbers::sqrt2);
 double normal_quantile(double p) { return -std::numbers::sqrt2 * boost::math::erfc_inv(2.0 * p); }
 
 double normal_excess(double alpha, double log_q) {
-  // A probability of 0 or 1 has no quantile; next to them it has one, and no draw can tell the difference.
-  constexpr double kLargest = 1.0 - std::numeric_limits<double>::epsilon();
+  if (log_q >= 0.0) return 0.0;
   if (alpha < kTail) {
-    const double p = std::clamp(std::exp(log_q) * normal_above(alpha), std::numeric_limits<double>::min(), kLargest);
-    return std::max(0.0, -normal_quantile(p) - alpha);
+    // From the nearer tail: what lies above α + d, or below it.
+    const double whole = normal_above(alpha);
+    const double above = std::exp(log_q) * whole, below = normal_below(alpha) - std::expm1(log_q) * whole;
+    return std::max(0.0, (above < 0.5 ? -normal_quantile(above) : normal_quantile(below)) - alpha);
   }
-  // −ln of both sides: α d + d²/2 + ln m(α) − ln m(α + d) = −ln q with the Mills ratio m. The left side rises with slope
-  // 1/m(α + d) and is convex, so Newton steps from the right, d = −ln q/α, stay there and converge.
+  // −ln of both sides: α d + d²/2 + ln m(α) − ln m(α + d) = −ln q with the Mills ratio m. The left side rises with
+  // slope 1/m(α + d) and is convex, so Newton steps from the right, d = −ln q/α, stay there and converge.
   double d = -log_q / alpha;
   for (int i = 0; i < 50; ++i) {
     const double m = mills_ratio(alpha + d);

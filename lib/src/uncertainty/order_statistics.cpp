@@ -68,9 +68,7 @@ Cuts pilot_cuts(std::span<const double> values, const Places& places) {
   const double tail = static_cast<double>(places.tail()) / static_cast<double>(places.size);
   const double outer = n * tail + 5.0 * std::sqrt(n * tail * (1.0 - tail)) + 2.0;
   const double half = 2.5 * std::sqrt(n) + 2.0;
-  const auto at = [&](double place) {
-    return pilot[static_cast<std::size_t>(std::clamp(place, 0.0, n - 1.0))];
-  };
+  const auto at = [&](double place) { return pilot[static_cast<std::size_t>(std::clamp(place, 0.0, n - 1.0))]; };
   return {at(outer), at(0.5 * n - half), at(0.5 * n + half), at(n - 1.0 - outer)};
 }
 
@@ -88,7 +86,7 @@ void cut_block(std::span<const double> values, const Cuts cuts, Parts& parts, st
   std::ptrdiff_t l = 0, m = 0, h = 0, below = 0;
   for (const double value : values) {
     low[l] = middle[m] = high[h] = value;
-    const std::ptrdiff_t below_middle = value < cuts.middle_low, above_middle = value > cuts.middle_high;
+    const std::ptrdiff_t below_middle = value<cuts.middle_low, above_middle = value> cuts.middle_high;
     l += static_cast<std::ptrdiff_t>(value < cuts.low);
     m += 1 - below_middle - above_middle;
     h += static_cast<std::ptrdiff_t>(value > cuts.high);

@@ -70,8 +70,7 @@ double derivative(Surroundings& f, std::size_t i, const ModelInput& input) {
       const auto at = static_cast<std::size_t>(j);
       power *= 4.0;
       row[at] = (power * row[at - 1] - above[at - 1]) / (power - 1.0);
-      const double error =
-          std::max(std::abs(row[at] - row[at - 1]), std::abs(row[at] - above[at - 1])) + rounding;
+      const double error = std::max(std::abs(row[at] - row[at - 1]), std::abs(row[at] - above[at - 1])) + rounding;
       if (error < best_error) {
         best_error = error;
         best = row[at];
@@ -177,8 +176,8 @@ Propagation propagate(const Model& model, const std::vector<ModelInput>& inputs,
   }
   result.budget = combine(parts, correlations);
   result.standard_uncertainty = result.budget.standard_uncertainty;
-  result.effective_degrees_of_freedom = effective_degrees_of_freedom(
-      inputs, result.sensitivities, !correlations.empty(), result.standard_uncertainty);
+  result.effective_degrees_of_freedom =
+      effective_degrees_of_freedom(inputs, result.sensitivities, !correlations.empty(), result.standard_uncertainty);
   if (options.second_order) {
     const double more = second_order_variance(f, inputs, result.sensitivities);
     const double first = result.standard_uncertainty;

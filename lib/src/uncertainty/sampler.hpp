@@ -13,8 +13,8 @@ namespace pellicle::detail {
 
 /// Turns standard normal numbers into numbers of a distribution, at equal probability. So correlated normal numbers
 /// become correlated numbers of any distributions (Gaussian copula). Student t, gamma, Poisson count and truncated
-/// normal are interpolated between values of Distribution::at_normal(): within 1e-6 of the distance from the mean, or of
-/// the standard deviation where that is larger, for |z| < 5; draws beyond |z| = 9 are taken for 9.
+/// normal are interpolated between values of Distribution::at_normal(): within 1e-6 of the distance from the mean, or
+/// of the standard deviation where that is larger, for |z| < 5; draws beyond |z| = 9 are taken for 9.
 class Sampler {
  public:
   explicit Sampler(const Distribution& distribution);

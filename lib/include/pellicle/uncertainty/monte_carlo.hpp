@@ -1,8 +1,8 @@
 #pragma once
 /// Propagation of distributions through any model by random draws: JCGM 101:2008 [jcgm101].
 ///
-/// Draws are made in blocks of kBlockSize, each with random streams of its own (base/random.hpp), and evaluated a block at a
-/// time. Sums run within blocks, then over blocks in their order. So the result depends on the seed and on nothing
+/// Draws are made in blocks of kBlockSize, each with random streams of its own (base/random.hpp), and evaluated a block
+/// at a time. Sums run within blocks, then over blocks in their order. So the result depends on the seed and on nothing
 /// else: not on threads, not on chance.
 
 #include <cstddef>
@@ -28,14 +28,14 @@ using BlockModel = std::function<void(std::span<const std::span<const double>> i
 /// How to draw.
 struct MonteCarloOptions {
   std::size_t draws = 1'000'000;  ///< fixed number; not used when adaptive
-  /// Draw until the results are stable to `significant_digits` of the standard uncertainty (JCGM 101:2008, 7.9), looking
-  /// first after eight batches, then after every quarter more.
+  /// Draw until the results are stable to `significant_digits` of the standard uncertainty (JCGM 101:2008, 7.9),
+  /// looking first after eight batches, then after every quarter more.
   bool adaptive = false;
-  int significant_digits = 2;            ///< 1 or 2
-  std::size_t most_draws = 4'000'000;    ///< adaptive: end here, stable or not; eight bytes are kept per draw
-  double coverage_probability = 0.95;    ///< 0.5 … 0.999
-  std::uint64_t seed = 20080101;         ///< any; the same seed, the same result
-  unsigned threads = 0;                  ///< at most so many; 0: thread_count()
+  int significant_digits = 2;          ///< 1 or 2
+  std::size_t most_draws = 4'000'000;  ///< adaptive: end here, stable or not; eight bytes are kept per draw
+  double coverage_probability = 0.95;  ///< 0.5 … 0.999
+  std::uint64_t seed = 20080101;       ///< any; the same seed, the same result
+  unsigned threads = 0;                ///< at most so many; 0: thread_count()
   /// Called now and then, from the thread that called monte_carlo(), with the draws made and those planned so far.
   /// False ends the work.
   std::function<bool(std::size_t done, std::size_t planned)> progress = {};
@@ -66,8 +66,8 @@ struct MonteCarlo {
 
 /// Draws from the distributions of the inputs and evaluates the model.
 /// Correlated inputs: normal numbers with these correlation coefficients, each turned into its distribution at equal
-/// probability (Gaussian copula) [nelsen2006]. For normal inputs the coefficients are those of the inputs themselves; for
-/// lognormal inputs of 10 % these come out smaller by less than 0.5 %.
+/// probability (Gaussian copula) [nelsen2006]. For normal inputs the coefficients are those of the inputs themselves;
+/// for lognormal inputs of 10 % these come out smaller by less than 0.5 %.
 /// @throws InputError for options outside their ranges, fewer than 1000 draws, correlations as combine(), a set of
 ///         correlations that no quantities can have
 /// @throws DomainError when fewer than half of the draws have a value

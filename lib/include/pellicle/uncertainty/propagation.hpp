@@ -1,7 +1,7 @@
 #pragma once
 /// Propagation of uncertainty through any model y = f(x₁ … xₙ), after the GUM.
 ///
-///   cᵢ = ∂f/∂xᵢ at the means,   u² = Σᵢ Σⱼ cᵢ u(xᵢ) r(xᵢ, xⱼ) cⱼ u(xⱼ)                  JCGM 100:2008, (13), (16) [jcgm100]
+///   cᵢ = ∂f/∂xᵢ at the means,  u² = Σᵢ Σⱼ cᵢ u(xᵢ) r(xᵢ, xⱼ) cⱼ u(xⱼ)     JCGM 100:2008, (13), (16)     [jcgm100]
 ///
 /// The derivatives are numerical. The model is taken as straight over the spread of its inputs; second-order terms
 /// mend that in part, monte_carlo.hpp wholly.

@@ -39,4 +39,6 @@
 #include "pellicle/io/result_json.hpp"
 #include "pellicle/io/run_file.hpp"
 #include "pellicle/io/starter.hpp"
+#include "pellicle/report/figure.hpp"
+#include "pellicle/report/html.hpp"
 #include "pellicle/report/text.hpp"

@@ -79,7 +79,15 @@ class SeriesSet {
     if (fresh) series_.push_back({name, marker, arrow, {}, shift});
     return series_[at->second];
   }
-  std::vector<PointSeries> take() { return std::move(series_); }
+  /// Thicknesses first, then outliers, bounds and what has no thickness.
+  std::vector<PointSeries> take() {
+    const auto rank = [](const PointSeries& s) {
+      if (s.marker == Marker::cross) return 3;
+      return s.arrow != Arrow::none ? 2 : s.marker == Marker::ring ? 1 : 0;
+    };
+    std::stable_sort(series_.begin(), series_.end(), [&](const auto& a, const auto& b) { return rank(a) < rank(b); });
+    return std::move(series_);
+  }
 
  private:
   std::map<std::string, std::size_t> index_;
@@ -92,7 +100,8 @@ struct Names {
 
 Names names_for(const std::string& prefix, bool intervals = true) {
   const std::string front = prefix.empty() ? "" : prefix + ": ";
-  return {front + (intervals ? "thickness with 95 % interval" : "thickness, bar: repeatability alone (95 %)"), front + "at most (95 % bound)", front + "at least (95 % bound)",
+  const char* bars = intervals ? "95 % interval (thick bar: repeatability alone)" : "bar: repeatability alone (95 %)";
+  return {(prefix.empty() ? "thickness, " : front) + bars, front + "at most (95 % bound)", front + "at least (95 % bound)",
           front + "no thickness", front + "outlier"};
 }
 
@@ -119,7 +128,7 @@ double sidestep(std::size_t k, std::size_t n, double pitch) {
 }
 
 /// Every result by itself.
-void add_each(const Run& run, const ThicknessResults& all, const Places& places, const Drawn& drawn, double from,
+void add_each(const Run& run, const ThicknessResults& all, const Places& places, const Drawn& drawn, double foot,
               SeriesSet& series) {
   std::set<std::string> spots;
   for (const std::size_t i : places.members) spots.insert(spot_words(run, all.results[i]));
@@ -150,7 +159,7 @@ void add_each(const Run& run, const ThicknessResults& all, const Places& places,
       PointSeries& s = series.get(upper ? names.upper : names.lower, shape, upper ? Arrow::down : Arrow::up, shift);
       s.points.push_back({x, r.bound->at95_nm});
     } else {
-      series.get(names_for(drawn.prefix).failed, Marker::cross, Arrow::none, shift).points.push_back({x, from});
+      series.get(names_for(drawn.prefix).failed, Marker::cross, Arrow::none, shift).points.push_back({x, foot});
     }
   }
 }
@@ -162,7 +171,7 @@ double median(std::vector<double>& values) {
 }
 
 /// Successive results together: the median, and a bar from the lowest to the highest thickness.
-void add_groups(const ThicknessResults& all, const Places& places, const Drawn& drawn, double from, SeriesSet& series) {
+void add_groups(const ThicknessResults& all, const Places& places, const Drawn& drawn, double foot, SeriesSet& series) {
   const std::size_t size = (places.count + kGroups - 1) / kGroups;
   struct Group {
     std::vector<double> values, upper, lower;
@@ -197,7 +206,7 @@ void add_groups(const ThicknessResults& all, const Places& places, const Drawn& 
     }
     if (!group.upper.empty()) series.get(names.upper, shape, Arrow::down).points.push_back({x, median(group.upper)});
     if (!group.lower.empty()) series.get(names.lower, shape, Arrow::up).points.push_back({x, median(group.lower)});
-    if (group.failed) series.get(names.failed, Marker::cross).points.push_back({x, from});
+    if (group.failed) series.get(names.failed, Marker::cross).points.push_back({x, foot});
   }
   for (std::size_t k = 0, odd = 0; k < places.members.size() && odd < kGroups; ++k) {
     const ThicknessResult& r = all.results[places.members[k]];
@@ -295,7 +304,7 @@ void set_spot_axis(const ThicknessResults& all, const Places& places, Figure& fi
     const double air = 0.06 * (high - low);
     figure.x = {"emission angle from the surface normal", "°", low - air, high + air, {}};
     constexpr double kGrazing = 60.0;
-    if (high > kGrazing) figure.lines.push_back({true, kGrazing, "60°: beyond it a constant length fails"});
+    if (high > kGrazing) figure.lines.push_back({true, kGrazing, "60°: above, elastic scattering changes the length"});
     return;
   }
   const double count = static_cast<double>(places.count);
@@ -337,6 +346,8 @@ Figure thickness_figure(const Run& run, const ThicknessResults& results, std::op
   figure.y.unit = "nm";
   std::tie(figure.y.low, figure.y.high) = thickness_range(results, places, figure);
 
+  // What has no thickness stands at the foot of the picture, clear of the axis.
+  const double foot = figure.y.low + 0.03 * (figure.y.high - figure.y.low);
   SeriesSet series;
   for (std::size_t n = 0; n < routes.size(); ++n) {
     Drawn drawn;
@@ -347,12 +358,12 @@ Figure thickness_figure(const Run& run, const ThicknessResults& results, std::op
     const ThicknessRoute& p = results.routes[drawn.route];
     if (routes.size() > 1) drawn.prefix = p.layer + ", " + lines_words(run, p);
     if (places.members.size() > kMostPoints) {
-      add_groups(results, places, drawn, figure.y.low, series);
+      add_groups(results, places, drawn, foot, series);
       continue;
     }
     const double places_across = places.by_angle ? 90.0 : static_cast<double>(std::max<std::size_t>(places.count, 1));
     drawn.shift = sidestep(n, routes.size(), places.by_angle ? 0.011 : std::min(0.16 / places_across, 0.03));
-    add_each(run, results, places, drawn, figure.y.low, series);
+    add_each(run, results, places, drawn, foot, series);
   }
   figure.points = series.take();
   set_spot_axis(results, places, figure);
@@ -366,7 +377,7 @@ Figure budget_figure(const Run& run, const ThicknessResults& results, std::size_
   const Budget& budget = r.thickness->budget;
   Figure figure;
   figure.title = "Uncertainty budget of " + route_words(run, results.routes[r.route]) + ": spot " + spot_words(run, r) +
-                 ", " + rounded_text(r.emission_deg, 4) + "° emission";
+                 ", " + detail::angle_words(r.emission_deg) + "° emission";
   figure.subtitle = run.title;
   BarSeries scale{"thickness scale: common to all spots, does not average", Fill::solid, {}};
   BarSeries repeatability{"repeatability: falls with the number of spots", Fill::hatched, {}};

@@ -68,7 +68,7 @@ std::string terminal_line(const Figure& figure, PlotFormat format, int columns, 
       return fmt::format("set terminal pdfcairo noenhanced size 18cm,{:.1f}cm font 'sans,10' background rgb 'white'\n", 18.0 * height / 860.0);
     case PlotFormat::terminal: break;
   }
-  return fmt::format("set terminal dumb noenhanced mono size {},{}\n", std::clamp(columns, 40, 400), std::clamp(rows, 16, 200));
+  return fmt::format("set terminal dumb nofeed noenhanced mono size {},{}\n", std::clamp(columns, 40, 400), std::clamp(rows, 16, 200));
 }
 
 /// One element of the plot command, and the data block it reads.
@@ -207,9 +207,14 @@ class CharacterPlots {
   double step_x_, step_y_;
 };
 
-/// Letters that every font has; turned text in others breaks where a font is missing.
-bool plain_letters(const std::string& text) {
-  return std::all_of(text.begin(), text.end(), [](char c) { return static_cast<unsigned char>(c) < 0xD6; });
+Figure with_european_text(Figure figure) {
+  for (std::string* text : {&figure.title, &figure.subtitle, &figure.x.label, &figure.y.label}) *text = detail::european(*text);
+  for (FigureAxis* axis : {&figure.x, &figure.y}) {
+    for (std::string& name : axis->names) name = detail::european(name);
+  }
+  for (PointSeries& s : figure.points) s.name = detail::european(s.name);
+  for (FigureText& t : figure.texts) t.text = detail::european(t.text);
+  return figure;
 }
 
 /// Names along the horizontal axis: flat where they fit, tilted where not; counted where neither is possible.
@@ -218,13 +223,9 @@ std::string name_ticks(const Figure& figure, bool terminal, int columns) {
   const std::size_t count = figure.x.names.size();
   const std::size_t room = static_cast<std::size_t>(terminal ? std::max(columns - 14, 20) : 92) / count;
   std::size_t longest = 0;
-  bool plain = true;
-  for (const std::string& name : figure.x.names) {
-    longest = std::max(longest, detail::characters(printable(name)));
-    plain = plain && plain_letters(printable(name));
-  }
+  for (const std::string& name : figure.x.names) longest = std::max(longest, detail::characters(printable(name)));
   if (longest < room) return "set xtics (" + names(figure.x.names, room) + ")\n";
-  if (plain && !terminal) return "set xtics rotate by 50 right (" + names(figure.x.names, kTilted) + ")\n";
+  if (!terminal) return "set xtics rotate by 50 right (" + names(figure.x.names, kTilted) + ")\n";
   if (room >= 12) return "set xtics (" + names(figure.x.names, room - 2) + ")\n";
   std::string numbers;
   const std::size_t step = 1 + 4 * count / static_cast<std::size_t>(columns);
@@ -257,7 +258,10 @@ std::optional<PlotFormat> plot_format(std::string_view path) {
   return std::nullopt;
 }
 
-std::string gnuplot_script(const Figure& figure, PlotFormat format, int columns, int rows) {
+std::string gnuplot_script(const Figure& original, PlotFormat format, int columns, int rows) {
+  // Where a font lacks a character, the cairo terminals draw a box as large as the picture.
+  const bool cairo = format == PlotFormat::png || format == PlotFormat::pdf;
+  const Figure figure = cairo ? with_european_text(original) : original;
   const bool terminal = format == PlotFormat::terminal;
   columns = std::clamp(columns, 40, 400);
   rows = std::clamp(rows, 16, 200);
@@ -265,7 +269,7 @@ std::string gnuplot_script(const Figure& figure, PlotFormat format, int columns,
   script += "set title " + quoted(figure.title, terminal ? static_cast<std::size_t>(columns) - 4 : 92);
   if (!figure.subtitle.empty() && !terminal) script += ".\"\\n\"." + quoted(figure.subtitle, 92);
   script += "\n" + axis_lines(figure, terminal, columns);
-  script += "set border 3\nset tics nomirror out\nset key below left reverse Left width 1\nset bars 0.6\n";
+  script += "set border 3\nset tics nomirror out\nset key below left reverse Left width 1 height 1\nset bars 0.6\nset pointintervalbox 0\n";
   for (const FigureText& t : figure.texts) {
     script += fmt::format("set label {} at {},{} left offset 1,0\n", quoted(t.text), t.x, t.y);
   }

@@ -38,6 +38,13 @@ bool unprintable(char32_t code) {
          (code >= 0x2066 && code <= 0x2069) || code == 0xFFFE || code == 0xFFFF;
 }
 
+/// Letters and signs that every font for European scripts has.
+bool common(char32_t code) {
+  static const std::u32string signs = U"€™Ω−∞≈≠≤≥";
+  return code < 0x500 || (code >= 0x1E00 && code <= 0x1EFF) || (code >= 0x2010 && code <= 0x203A) ||
+         (code >= 0x2070 && code <= 0x208E) || signs.find(code) != std::u32string::npos;
+}
+
 int decimals_for(double sd) {
   return sd > 0.0 ? std::clamp(1 - static_cast<int>(std::floor(std::log10(sd))), 0, 6) : 3;
 }
@@ -57,6 +64,21 @@ std::string printable(std::string_view text) {
       result += text.substr(at, length);
     }
     at += std::max<std::size_t>(length, 1);
+  }
+  return result;
+}
+
+std::string european(std::string_view text) {
+  const std::string whole = printable(text);
+  std::string result;
+  for (std::size_t at = 0; at < whole.size();) {
+    const auto [code, length] = code_point(whole, at);
+    if (common(code)) {
+      result += whole.substr(at, length);
+    } else {
+      result += '?';
+    }
+    at += length;
   }
   return result;
 }
@@ -94,6 +116,13 @@ std::string value_words(double value, double sd) { return fmt::format("{:.{}f}",
 
 std::string interval_words(const Interval& interval, double sd) {
   return value_words(interval.low95, sd) + " to " + value_words(interval.high95, sd);
+}
+
+std::string angle_words(double degrees) {
+  std::string text = fmt::format("{:.2f}", degrees);
+  text.erase(text.find_last_not_of('0') + 1);
+  if (text.ends_with('.')) text.pop_back();
+  return text == "-0" ? "0" : text;
 }
 
 std::string input_words(std::string_view name) {

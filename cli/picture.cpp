@@ -67,7 +67,9 @@ std::string run_gnuplot(const std::string& script) {
   pid_t child = 0;
   const int failure = ::posix_spawnp(&child, name, &actions, nullptr, arguments, environ);
   posix_spawn_file_actions_destroy(&actions);
-  if (failure == ENOENT) throw DomainError("--plot", "gnuplot, which draws the pictures, is not installed", "on Debian: apt-get install gnuplot-nox");
+  if (failure == ENOENT)
+    throw DomainError("--plot", "gnuplot, which draws the pictures, is not installed",
+                      "on Debian: apt-get install gnuplot-nox");
   if (failure != 0) throw DomainError("--plot", std::string("gnuplot cannot be started: ") + std::strerror(failure));
   int status = 0;
   while (::waitpid(child, &status, 0) < 0 && errno == EINTR) {
@@ -128,7 +130,8 @@ void add_picture_options(CLI::App& command, PictureOptions& options) {
       ->type_name("FILE")
       ->expected(0, 1)
       ->trigger_on_parse();
-  command.add_option("--report", options.report, "write a report: one .html file that needs nothing else")->type_name("FILE.html");
+  command.add_option("--report", options.report, "write a report: one .html file that needs nothing else")
+      ->type_name("FILE.html");
 }
 
 void check_picture_options(const PictureOptions& options, const Output& output) {
@@ -138,11 +141,13 @@ void check_picture_options(const PictureOptions& options, const Output& output) 
   }
   if (!options.plot) return;
   if (*options.plot != kTerminal) {
-    if (!plot_format(*options.plot)) throw UsageError("--plot " + *options.plot + ": pictures end in .svg, .png or .pdf; - draws on the terminal");
+    if (!plot_format(*options.plot))
+      throw UsageError("--plot " + *options.plot + ": pictures end in .svg, .png or .pdf; - draws on the terminal");
     return;
   }
   if (output.out.empty() && (output.json || output.csv)) {
-    throw UsageError("--plot without a file would draw into the " + std::string(output.json ? "JSON" : "CSV") + "; name a file, or give --out");
+    throw UsageError("--plot without a file would draw into the " + std::string(output.json ? "JSON" : "CSV") +
+                     "; name a file, or give --out");
   }
 }
 
@@ -164,7 +169,8 @@ void deliver_plot(const PictureOptions& options, const Output& output, const Fig
 }
 
 std::string repeating_command(const CLI::App& command) {
-  static const std::set<std::string> elsewhere = {"--json", "--csv", "--out", "--quiet", "--plot", "--report", "--help"};
+  static const std::set<std::string> elsewhere = {"--json", "--csv",    "--out", "--quiet",
+                                                  "--plot", "--report", "--help"};
   std::string positionals, options;
   for (const CLI::Option* option : command.get_options()) {
     if (option->count() == 0 || elsewhere.contains(option->get_name())) continue;

@@ -1,10 +1,9 @@
 #pragma once
 /// Options --plot and --report: results as pictures and as a report.
 
+#include <CLI/CLI.hpp>
 #include <optional>
 #include <string>
-
-#include <CLI/CLI.hpp>
 
 #include "command.hpp"
 #include "pellicle/report/figure.hpp"

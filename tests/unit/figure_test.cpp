@@ -64,13 +64,14 @@ Run bounds_run() {
 }
 
 const PointSeries* with_arrow(const Figure& figure, Arrow arrow) {
-  const auto found = std::find_if(figure.points.begin(), figure.points.end(), [&](const auto& s) { return s.arrow == arrow; });
+  const auto found =
+      std::find_if(figure.points.begin(), figure.points.end(), [&](const auto& s) { return s.arrow == arrow; });
   return found == figure.points.end() ? nullptr : &*found;
 }
 
 const PointSeries* with_marker(const Figure& figure, Marker marker) {
-  const auto found =
-      std::find_if(figure.points.begin(), figure.points.end(), [&](const auto& s) { return s.arrow == Arrow::none && s.marker == marker; });
+  const auto found = std::find_if(figure.points.begin(), figure.points.end(),
+                                  [&](const auto& s) { return s.arrow == Arrow::none && s.marker == marker; });
   return found == figure.points.end() ? nullptr : &*found;
 }
 
@@ -79,8 +80,10 @@ std::string outside_quotes(const std::string& script) {
   std::string outside;
   bool inside = false;
   for (const char c : script) {
-    if (c == '\'') inside = !inside;
-    else if (!inside) outside += c;
+    if (c == '\'')
+      inside = !inside;
+    else if (!inside)
+      outside += c;
   }
   CHECK_FALSE(inside);
   return outside;
@@ -239,8 +242,9 @@ TEST_CASE("a budget has one bar for each share and tells kinds apart by fill") {
     const ContributionKind kind = s.fill == Fill::solid ? ContributionKind::scale : ContributionKind::repeatability;
     for (const FigureBar& b : s.bars) {
       const auto& name = f.y.names.at(static_cast<std::size_t>(b.y));
-      const auto row = std::find_if(budget.rows.begin(), budget.rows.end(),
-                                    [&](const BudgetRow& r) { return r.kind == kind && close_to(100.0 * r.share, b.length, rel(1e-12)).close; });
+      const auto row = std::find_if(budget.rows.begin(), budget.rows.end(), [&](const BudgetRow& r) {
+        return r.kind == kind && close_to(100.0 * r.share, b.length, rel(1e-12)).close;
+      });
       CHECK_MESSAGE(row != budget.rows.end(), name);
       sum += b.length;
       ++bars;
@@ -257,7 +261,8 @@ TEST_CASE("a budget has one bar for each share and tells kinds apart by fill") {
 TEST_CASE("a budget keeps shares below zero and needs a thickness") {
   Run run = many_spots(1);
   ThicknessResults all = run_thickness(run);
-  all.results[0].thickness->budget.rows = {{"a", ContributionKind::scale, 0.3, 1.2}, {"b", ContributionKind::scale, 0.1, -0.2}};
+  all.results[0].thickness->budget.rows = {{"a", ContributionKind::scale, 0.3, 1.2},
+                                           {"b", ContributionKind::scale, 0.1, -0.2}};
   const Figure f = budget_figure(run, all, 0);
   CHECK(f.x.low < -20.0);
   CHECK(f.x.high > 120.0);
@@ -303,7 +308,8 @@ TEST_CASE("an SVG is whole and needs nothing else and shows text as text") {
     CHECK(test::unbalanced_tag(svg).empty());
     CHECK(svg.starts_with("<svg xmlns=\"http://www.w3.org/2000/svg\""));
     CHECK(contains(svg, "role=\"img\""));
-    for (const char* bad : {"<script", "<b>", "href", "url(", "src=", "nan", "inf\"", "\x01"}) CHECK_MESSAGE(!contains(svg, bad), bad);
+    for (const char* bad : {"<script", "<b>", "href", "url(", "src=", "nan", "inf\"", "\x01"})
+      CHECK_MESSAGE(!contains(svg, bad), bad);
     CHECK(contains(svg, "&lt;b&gt;&quot;&amp;&#39;"));
   }
 }
@@ -320,7 +326,8 @@ TEST_CASE("a figure knows the formats by their extensions") {
   CHECK(plot_format("a.svg") == PlotFormat::svg);
   CHECK(plot_format("b/c.PNG") == PlotFormat::png);
   CHECK(plot_format("x.y.pdf") == PlotFormat::pdf);
-  for (const char* path : {"a", "a.gif", "svg", "a.svg/b", "", "a."}) CHECK_MESSAGE(!plot_format(path).has_value(), path);
+  for (const char* path : {"a", "a.gif", "svg", "a.svg/b", "", "a."})
+    CHECK_MESSAGE(!plot_format(path).has_value(), path);
 }
 
 TEST_CASE("no text of a figure can leave the quotes of a gnuplot script") {
@@ -343,7 +350,8 @@ TEST_CASE("no text of a figure can leave the quotes of a gnuplot script") {
     }
   }
   // A tick takes its name for a format.
-  CHECK(contains(gnuplot_script(thickness_figure(many_spots(1), run_thickness(many_spots(1))), PlotFormat::svg), "'s1' 0"));
+  CHECK(contains(gnuplot_script(thickness_figure(many_spots(1), run_thickness(many_spots(1))), PlotFormat::svg),
+                 "'s1' 0"));
   Run percent = many_spots(2);
   percent.areas[0].spot = percent.areas[1].spot = "5 %d";
   CHECK(contains(gnuplot_script(thickness_figure(percent, run_thickness(percent)), PlotFormat::svg), "'5 %%d' 0"));

@@ -40,7 +40,9 @@ Run spots_run(std::size_t count) {
   return run;
 }
 
-std::string html_of(const Run& run, const ReportOrigin& origin = {}) { return thickness_html(run, run_thickness(run), origin); }
+std::string html_of(const Run& run, const ReportOrigin& origin = {}) {
+  return thickness_html(run, run_thickness(run), origin);
+}
 
 /// The whole text of a number as the report carries it.
 std::string data_of(const json& number) { return "<data value=\"" + number_text(number.get<double>()) + "\">"; }
@@ -61,9 +63,10 @@ TEST_CASE("a report has its sections in the order of the reporting standard") {
   std::size_t last = html.find("class=\"answer\"");
   CHECK(last != std::string::npos);
   int number = 0;
-  for (const char* id : {"specimen", "instrument", "areas", "lengths", "reference", "densities", "results", "budget", "findings", "cautions",
-                         "not-stated", "repeat"}) {
-    const std::size_t at = html.find("<h2 id=\"" + std::string(id) + "\"><span class=\"count\">" + std::to_string(++number) + "</span>");
+  for (const char* id : {"specimen", "instrument", "areas", "lengths", "reference", "densities", "results", "budget",
+                         "findings", "cautions", "not-stated", "repeat"}) {
+    const std::size_t at =
+        html.find("<h2 id=\"" + std::string(id) + "\"><span class=\"count\">" + std::to_string(++number) + "</span>");
     REQUIRE_MESSAGE(at != std::string::npos, id);
     CHECK_MESSAGE(at > last, id);
     last = at;
@@ -83,12 +86,14 @@ TEST_CASE("the numbers of a report are those of the JSON result") {
     const std::string results = section(html, "results");
     for (const json& r : doc["results"]) {
       const json& t = r["thickness_nm"];
-      for (const json& number : {t["value"], t["sd"], t["low95"], t["high95"], r["repeatability_nm"], r["areal_density_ug_cm2"]["value"],
-                                 r["areal_density_ug_cm2"]["sd"], r["emitting_atoms_per_nm2"]["value"]}) {
+      for (const json& number :
+           {t["value"], t["sd"], t["low95"], t["high95"], r["repeatability_nm"], r["areal_density_ug_cm2"]["value"],
+            r["areal_density_ug_cm2"]["sd"], r["emitting_atoms_per_nm2"]["value"]}) {
         CHECK_MESSAGE(contains(results, data_of(number)), number.dump());
       }
       if (method == IntervalMethod::monte_carlo) {
-        for (const char* key : {"mean", "sd", "low95", "high95"}) CHECK_MESSAGE(contains(results, data_of(r["monte_carlo_nm"][key])), key);
+        for (const char* key : {"mean", "sd", "low95", "high95"})
+          CHECK_MESSAGE(contains(results, data_of(r["monte_carlo_nm"][key])), key);
         CHECK(contains(results, data_of(r["gum_nm"]["low95"])));
       }
       CHECK(contains(section(html, "areas"), data_of(r["film_area"]["sd"])));
@@ -115,7 +120,10 @@ TEST_CASE("a single result leads the report with its interval and method") {
   const Run run = spots_run(1);
   const std::string html = html_of(run);
   const std::string brief = html.substr(0, html.find("<main>"));
-  CHECK(std::regex_search(brief, std::regex("class=\"answer\"><data value=\"[0-9.]+\">[0-9.]+</data> ± <data value=\"[0-9.]+\">[0-9.]+</data> nm")));
+  CHECK(std::regex_search(
+      brief,
+      std::regex(
+          "class=\"answer\"><data value=\"[0-9.]+\">[0-9.]+</data> ± <data value=\"[0-9.]+\">[0-9.]+</data> nm")));
   CHECK(contains(brief, "(GUM)"));
   CHECK(contains(brief, "href=\"#findings\""));
 }
@@ -145,9 +153,13 @@ TEST_CASE("text from outside stays text") {
 
 TEST_CASE("bytes that are no text become marks") {
   Run run = spots_run(1);
-  run.title = "a\x01\xFF\xC3(\xE2\x80\xAE" "b\n";
+  run.title =
+      "a\x01\xFF\xC3(\xE2\x80\xAE"
+      "b\n";
   const std::string html = html_of(run);
-  CHECK(contains(html, "<h1>a\xEF\xBF\xBD\xEF\xBF\xBD\xEF\xBF\xBD(\xEF\xBF\xBD" "b </h1>"));
+  CHECK(contains(html,
+                 "<h1>a\xEF\xBF\xBD\xEF\xBF\xBD\xEF\xBF\xBD(\xEF\xBF\xBD"
+                 "b </h1>"));
 }
 
 TEST_CASE("a report needs nothing but itself") {
@@ -156,7 +168,8 @@ TEST_CASE("a report needs nothing but itself") {
   CHECK(test::unbalanced_tag(html) == "");
   CHECK(contains(html, "default-src 'none'"));
   CHECK(contains(html, "@media print"));
-  for (const char* bad : {"src=", "url(", "@import", "<link", "<script", "https:"}) CHECK_MESSAGE(!contains(html, bad), bad);
+  for (const char* bad : {"src=", "url(", "@import", "<link", "<script", "https:"})
+    CHECK_MESSAGE(!contains(html, bad), bad);
   CHECK(count_of(html, "http:") == count_of(html, "http://www.w3.org/2000/svg"));
   CHECK(count_of(html, "href=") == count_of(html, "href=\"#"));
   CHECK(count_of(html, "<svg") == count_of(html, "role=\"img\""));
@@ -176,8 +189,9 @@ TEST_CASE("what is absent reads not stated and is listed") {
   CHECK(contains(section(html, "areas"), "<dd>two doublets</dd>"));
   CHECK(count_of(section(html, "specimen"), "not stated") == 4);
   const std::string absent = section(html, "not-stated");
-  for (const char* item : {"analyst", "date of measurement", "instrument", "pass energy", "background", "charge reference",
-                           "check for X-ray damage", "angle between X-rays and analyser", "uncertainty of the emission angle"}) {
+  for (const char* item :
+       {"analyst", "date of measurement", "instrument", "pass energy", "background", "charge reference",
+        "check for X-ray damage", "angle between X-rays and analyser", "uncertainty of the emission angle"}) {
     CHECK_MESSAGE(contains(absent, item), item);
   }
   CHECK(!contains(absent, "specimen"));
@@ -243,7 +257,8 @@ TEST_CASE("findings are grouped by severity from the worst and each sentence sta
   const ThicknessResults all = run_thickness(run);
   const std::string html = thickness_html(run, all);
   const std::string findings = section(html, "findings");
-  const std::size_t errors = findings.find("<caption>Errors"), warnings = findings.find("<caption>Warnings"), notes = findings.find("<caption>Notes");
+  const std::size_t errors = findings.find("<caption>Errors"), warnings = findings.find("<caption>Warnings"),
+                    notes = findings.find("<caption>Notes");
   REQUIRE(errors != std::string::npos);
   REQUIRE(notes != std::string::npos);
   CHECK(errors < notes);
@@ -255,7 +270,8 @@ TEST_CASE("findings are grouped by severity from the worst and each sentence sta
 
 TEST_CASE("cautions name the hazards and the limits of the number") {
   const std::string cautions = section(html_of(spots_run(1)), "cautions");
-  for (const char* item : {"uniform", "stated density", "X-rays", "High voltage", "vacuum", "hydrofluoric", "Sputter", "Nanopowders", "licensed"}) {
+  for (const char* item : {"uniform", "stated density", "X-rays", "High voltage", "vacuum", "hydrofluoric", "Sputter",
+                           "Nanopowders", "licensed"}) {
     CHECK_MESSAGE(contains(cautions, item), item);
   }
 }
@@ -277,7 +293,8 @@ TEST_CASE("a report says how to repeat its numbers") {
   const ThicknessResults all = run_thickness(run);
   const std::string digest = inputs_sha256(run);
   CHECK(json::parse(thickness_json(run, all))["inputs_sha256"] == digest);
-  const std::string repeat = section(thickness_html(run, all, {digest, "pellicle thickness 'my run.toml' --seed 4711"}), "repeat");
+  const std::string repeat =
+      section(thickness_html(run, all, {digest, "pellicle thickness 'my run.toml' --seed 4711"}), "repeat");
   CHECK(contains(repeat, "pellicle " + std::string(version())));
   CHECK(contains(repeat, digest));
   CHECK(contains(repeat, "<dd>4711</dd>"));

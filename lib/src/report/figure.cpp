@@ -1,13 +1,13 @@
 #include "pellicle/report/figure.hpp"
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <array>
 #include <cmath>
 #include <map>
 #include <set>
 #include <tuple>
-
-#include <fmt/format.h>
 
 #include "pellicle/base/error.hpp"
 #include "pellicle/base/number.hpp"
@@ -30,18 +30,17 @@ constexpr std::size_t kMostIntervals = 60;
 constexpr std::size_t kGroups = 200;
 /// Spots named on the axis; more are counted.
 constexpr std::size_t kMostNames = 40;
-/// Spots that get a marker of their own against the angle.
-constexpr std::size_t kMostSpots = 6;
 constexpr double kNormal95 = 1.959963984540054;
-constexpr std::array kMarkers = {Marker::disc, Marker::square, Marker::triangle, Marker::diamond, Marker::ring};
+/// A ring is an outlier, a cross has no thickness.
+constexpr std::array kMarkers = {Marker::disc, Marker::square, Marker::triangle, Marker::diamond};
 
 /// Where every result stands on the horizontal axis.
 struct Places {
   bool by_angle = false;
-  std::vector<std::size_t> members;   ///< results drawn
-  std::vector<double> position;       ///< of each member: the angle, or the count of its measurement from 0
-  std::vector<std::string> names;     ///< of the measurements
-  std::size_t count = 0;              ///< measurements
+  std::vector<std::size_t> members;  ///< results drawn
+  std::vector<double> position;      ///< of each member: the angle, or the count of its measurement from 0
+  std::vector<std::string> names;    ///< of the measurements
+  std::size_t count = 0;             ///< measurements
 };
 
 Places places_of(const Run& run, const ThicknessResults& all, std::optional<std::size_t> route) {
@@ -101,8 +100,8 @@ struct Names {
 Names names_for(const std::string& prefix, bool intervals = true) {
   const std::string front = prefix.empty() ? "" : prefix + ": ";
   const char* bars = intervals ? "95 % interval (thick bar: repeatability alone)" : "bar: repeatability alone (95 %)";
-  return {(prefix.empty() ? "thickness, " : front) + bars, front + "at most (95 % bound)", front + "at least (95 % bound)",
-          front + "no thickness", front + "outlier"};
+  return {(prefix.empty() ? "thickness, " : front) + bars, front + "at most (95 % bound)",
+          front + "at least (95 % bound)", front + "no thickness", front + "outlier"};
 }
 
 FigurePoint point_of(const ThicknessResult& r, double x, bool intervals) {
@@ -117,7 +116,7 @@ FigurePoint point_of(const ThicknessResult& r, double x, bool intervals) {
 /// What one route adds to a picture.
 struct Drawn {
   std::size_t route = 0;
-  std::string prefix;              ///< in the key, when there are several
+  std::string prefix;  ///< in the key, when there are several
   double shift = 0.0;
   std::set<std::size_t> outliers;  ///< positions in ThicknessResults::results
 };
@@ -132,7 +131,7 @@ void add_each(const Run& run, const ThicknessResults& all, const Places& places,
               SeriesSet& series) {
   std::set<std::string> spots;
   for (const std::size_t i : places.members) spots.insert(spot_words(run, all.results[i]));
-  const bool by_spot = places.by_angle && spots.size() > 1 && spots.size() <= kMostSpots;
+  const bool by_spot = places.by_angle && spots.size() > 1 && spots.size() <= kMarkers.size();
   const bool intervals = places.members.size() <= kMostIntervals;
   for (std::size_t k = 0; k < places.members.size(); ++k) {
     const std::size_t i = places.members[k];
@@ -152,7 +151,8 @@ void add_each(const Run& run, const ThicknessResults& all, const Places& places,
     const double x = places.position[k];
     if (r.thickness) {
       const bool odd = drawn.outliers.contains(i);
-      PointSeries& s = series.get(odd ? names.outlier : names.thickness, odd ? Marker::ring : shape, Arrow::none, shift);
+      PointSeries& s =
+          series.get(odd ? names.outlier : names.thickness, odd ? Marker::ring : shape, Arrow::none, shift);
       s.points.push_back(point_of(r, x, intervals));
     } else if (r.bound) {
       const bool upper = r.bound->upper;
@@ -258,8 +258,9 @@ void add_mean(const ThicknessSummary& s, Figure& figure) {
   const double scale = kNormal95 * s.scale_nm;
   const bool band = s.scale_stated && scale > 0.0;
   const std::string mean = detail::value_words(s.mean_nm, std::max(s.scale_nm, s.repeatability_of_mean_nm)) + " nm";
-  figure.lines.push_back({false, s.mean_nm, "mean of " + std::to_string(s.count) + ": " + mean +
-                                                (s.scale_stated ? "" : " (thickness scale not stated)")});
+  figure.lines.push_back(
+      {false, s.mean_nm,
+       "mean of " + std::to_string(s.count) + ": " + mean + (s.scale_stated ? "" : " (thickness scale not stated)")});
   if (band) {
     figure.bands.push_back({std::max(0.0, s.mean_nm - scale), s.mean_nm + scale,
                             "thickness scale about the mean (95 %), moves all spots together"});
@@ -272,20 +273,22 @@ std::string caption_of(const ThicknessResults& all, const Places& places, const 
     const ThicknessResult& r = all.results[i];
     ++(r.thickness ? values : r.bound ? bounds : failed);
   }
-  std::string text = counted(values, "thickness", "thicknesses") + " against " +
-                     (places.by_angle ? "the emission angle" : "the spot");
+  std::string text =
+      counted(values, "thickness", "thicknesses") + " against " + (places.by_angle ? "the emission angle" : "the spot");
   if (bounds > 0) text += ", " + counted(bounds, "bound as an arrow", "bounds as arrows");
   if (failed > 0) text += ", " + counted(failed, "cross without a thickness", "crosses without a thickness");
   text += ".";
   const bool each = places.members.size() <= kMostPoints;
   if (values > 0 && places.members.size() <= kMostIntervals) {
-    text += " Thin bars: 95 % interval of each result, thickness scale included. Thick bars: repeatability alone (95 %).";
+    text +=
+        " Thin bars: 95 % interval of each result, thickness scale included. Thick bars: repeatability alone (95 %).";
   } else if (values > 0 && each) {
     text += " Bars: repeatability alone (95 %).";
   }
   if (values > 0 && !each) {
-    text += " Too many to draw one by one: each mark is the median of several results, its bar reaches from the lowest "
-            "to the highest of them.";
+    text +=
+        " Too many to draw one by one: each mark is the median of several results, its bar reaches from the lowest "
+        "to the highest of them.";
   }
   for (const FigureLine& line : figure.lines) {
     if (!line.vertical) text += " Line: " + line.name + ".";
@@ -393,7 +396,8 @@ Figure budget_figure(const Run& run, const ThicknessResults& results, std::size_
     const double percent = 100.0 * row.share;
     figure.y.names.push_back(input_words(row.name));
     (row.kind == ContributionKind::scale ? scale : repeatability).bars.push_back({y, percent});
-    figure.texts.push_back({std::max(percent, 0.0), y, fmt::format("{:.1f} % ({} nm)", percent, rounded_text(row.contribution, 2))});
+    figure.texts.push_back(
+        {std::max(percent, 0.0), y, fmt::format("{:.1f} % ({} nm)", percent, rounded_text(row.contribution, 2))});
     lowest = std::min(lowest, percent);
     highest = std::max(highest, percent);
   }
@@ -415,8 +419,9 @@ Figure budget_figure(const Run& run, const ThicknessResults& results, std::size_
   figure.y.low = static_cast<double>(figure.y.names.size()) - 0.4;
   figure.y.high = -0.6;
   if (lowest < 0.0) figure.lines.push_back({true, 0.0, ""});
-  figure.caption = "Share of each input in the variance of the thickness of spot " + spot_words(run, r) + ", standard uncertainty " +
-                   rounded_text(budget.standard_uncertainty, 2) + " nm after the GUM; in brackets what the input alone contributes.";
+  figure.caption = "Share of each input in the variance of the thickness of spot " + spot_words(run, r) +
+                   ", standard uncertainty " + rounded_text(budget.standard_uncertainty, 2) +
+                   " nm after the GUM; in brackets what the input alone contributes.";
   if (left_out > 0) figure.caption += " " + counted(left_out, "input", "inputs") + " below 0.1 % left out.";
   if (lowest < 0.0) figure.caption += " A share below zero: correlation takes away what other inputs add.";
   return figure;

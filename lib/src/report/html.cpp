@@ -1,11 +1,11 @@
 #include "pellicle/report/html.hpp"
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <map>
 #include <set>
 #include <utility>
-
-#include <fmt/format.h>
 
 #include "pellicle/base/number.hpp"
 #include "pellicle/base/version.hpp"
@@ -46,14 +46,17 @@ std::size_t count_of(const Report& report, Severity severity) {
 
 std::string brief_of_one(const ThicknessResult& r) {
   if (r.bound) {
-    return fmt::format("<p class=\"answer\">{} {} nm</p><p>One-sided 95 % bound; a line was not detected.</p>",
-                       r.bound->upper ? "at most" : "at least", data_html(r.bound->at95_nm, rounded_text(r.bound->at95_nm, 3)));
+    return fmt::format("<p class=\"answer\">{} {} nm</p><p>One-sided 95 % bound; the findings say why.</p>",
+                       r.bound->upper ? "at most" : "at least",
+                       data_html(r.bound->at95_nm, rounded_text(r.bound->at95_nm, 3)));
   }
   if (!r.thickness) return "<p class=\"answer\">no thickness</p><p>" + escaped(r.failure) + "</p>";
   const double sd = r.standard_uncertainty_nm();
   std::string text = "<p class=\"answer\">" + quantity_html(r.thickness->value_nm, sd) + " nm</p><p>95 % interval " +
-                     interval_html(r.interval_nm(), sd) + " nm (" + interval_method(r) + "); ± is the standard uncertainty.";
-  if (!r.thickness->scale_stated) text += " The thickness scale is not stated, so that these uncertainties leave it out.";
+                     interval_html(r.interval_nm(), sd) + " nm (" + interval_method(r) +
+                     "); ± is the standard uncertainty.";
+  if (!r.thickness->scale_stated)
+    text += " The thickness scale is not stated, so that these uncertainties leave it out.";
   return text + "</p>";
 }
 
@@ -64,10 +67,13 @@ std::string brief_of_many(const ThicknessSummary& s) {
   } else {
     const double sd = std::max(s.repeatability_of_mean_nm, s.scale_nm);
     const auto part = [](double value) { return "± " + data_html(value, rounded_text(value, 2)) + " nm "; };
-    text = "<p class=\"answer\">" + data_html(s.mean_nm, value_words(s.mean_nm, sd)) + " nm</p><p>" +
-           (s.count == 1 ? std::string("The one result with a thickness") : fmt::format("Mean of {} results", s.count)) +
-           ", with standard uncertainties<br>" + part(s.repeatability_of_mean_nm) + "repeatability of the mean<br>" +
-           (s.scale_stated ? part(s.scale_nm) + "thickness scale, common to all results, does not average" : std::string("thickness scale not stated")) + "</p>";
+    text =
+        "<p class=\"answer\">" + data_html(s.mean_nm, value_words(s.mean_nm, sd)) + " nm</p><p>" +
+        (s.count == 1 ? std::string("The one result with a thickness") : fmt::format("Mean of {} results", s.count)) +
+        ", with standard uncertainties<br>" + part(s.repeatability_of_mean_nm) + "repeatability of the mean<br>" +
+        (s.scale_stated ? part(s.scale_nm) + "thickness scale, common to all results, does not average"
+                        : std::string("thickness scale not stated")) +
+        "</p>";
   }
   std::vector<std::string> rest;
   if (s.bounds > 0) rest.push_back(counted(s.bounds, "bound", "bounds"));
@@ -79,18 +85,22 @@ std::string brief_of_many(const ThicknessSummary& s) {
 
 void write_brief(const Report& report, HtmlWriter& w) {
   const std::string title = report.run.title.empty() ? "Film thickness" : report.run.title;
-  w.raw("<header>\n<p class=\"kind\">Film thickness by X-ray photoelectron spectroscopy</p>\n<h1>" + escaped(title) + "</h1>\n<div class=\"brief\">\n");
+  w.raw("<header>\n<p class=\"kind\">Film thickness by X-ray photoelectron spectroscopy</p>\n<h1>" + escaped(title) +
+        "</h1>\n<div class=\"brief\">\n");
   for (std::size_t p = 0; p < report.all.routes.size(); ++p) {
     const ThicknessRoute& route = report.all.routes[p];
-    w.raw("<p class=\"film\">Thickness of " + escaped(route_words(report.run, route)) + ", from " + escaped(lines_words(report.run, route)) + "</p>");
+    w.raw("<p class=\"film\">Thickness of " + escaped(route_words(report.run, route)) + ", from " +
+          escaped(lines_words(report.run, route)) + "</p>");
     const std::vector<std::size_t>& own = report.of_route[p];
     w.raw(own.size() == 1 ? brief_of_one(report.all.results[own[0]]) : brief_of_many(report.all.summaries[p]));
     w.raw("\n");
   }
   const std::size_t errors = count_of(report, Severity::error), warnings = count_of(report, Severity::warning);
-  w.raw(fmt::format("<p class=\"tally\"><a href=\"#findings\">Findings</a>: {}, {}, {}.</p>\n", counted(errors, "error", "errors"),
-                    counted(warnings, "warning", "warnings"), counted(count_of(report, Severity::note), "note", "notes")));
-  if (errors > 0) w.raw("<p class=\"alarm\">An error stands against this result: do not use the number before it is settled.</p>\n");
+  w.raw(fmt::format("<p class=\"tally\"><a href=\"#findings\">Findings</a>: {}, {}, {}.</p>\n",
+                    counted(errors, "error", "errors"), counted(warnings, "warning", "warnings"),
+                    counted(count_of(report, Severity::note), "note", "notes")));
+  if (errors > 0)
+    w.raw("<p class=\"alarm\">An error stands against this result: do not use the number before it is settled.</p>\n");
   w.raw("</div>\n</header>\n<main>\n");
 }
 
@@ -98,14 +108,18 @@ void write_cautions(HtmlWriter& w) {
   w.section("cautions", "Cautions");
   w.paragraph(cautions_text());
   w.heading("About the number");
-  w.list({"The equations hold for a flat film of equal thickness, without islands or gradients. One angle cannot test that; several can.",
-          "The thickness is that of a film of the stated density.",
-          "Length and reference ratio belong together: values of different origin do not fit each other.",
-          "Charging, a metal line fitted without its asymmetry, and losses of one line under another change areas before any of this begins."});
+  w.list(
+      {"The equations hold for a flat film of equal thickness, without islands or gradients. One angle cannot test "
+       "that; several can.",
+       "The thickness is that of a film of the stated density.",
+       "Length and reference ratio belong together: values of different origin do not fit each other.",
+       "Charging, a metal line fitted without its asymmetry, and losses of one line under another change areas before "
+       "any of this begins."});
   w.heading("In the laboratory");
   w.list({"X-rays: run the source only with its interlocks, shielding and leak check.",
           "High voltage on source, analyser, ion gun and flood gun: discharge, then lock out, before opening.",
-          "Ultra-high vacuum: viewports can implode, baked parts burn, liquid nitrogen displaces air; vent cold and slowly.",
+          "Ultra-high vacuum: viewports can implode, baked parts burn, liquid nitrogen displaces air; vent cold and "
+          "slowly.",
           "Acids, hydrofluoric acid above all: trained staff, never alone, calcium gluconate at hand.",
           "Sputter guns reduce oxides, roughen and implant; a toxic specimen coats the chamber.",
           "Nanopowders: fixed to the holder, handled enclosed, never loose in the vacuum; do not sputter them."});
@@ -114,10 +128,15 @@ void write_cautions(HtmlWriter& w) {
 
 void write_not_stated(const Report& report, HtmlWriter& w) {
   const Run& run = report.run;
-  static const std::map<std::string, std::string> names = {
-      {"specimen", "specimen"}, {"analyst", "analyst"}, {"date", "date of measurement"}, {"instrument_id", "instrument"},
-      {"pass_energy_ev", "pass energy"}, {"background", "background of the peak fit"}, {"fit_model", "fit model"},
-      {"charge_reference", "charge reference"}, {"damage_check", "check for X-ray damage"}};
+  static const std::map<std::string, std::string> names = {{"specimen", "specimen"},
+                                                           {"analyst", "analyst"},
+                                                           {"date", "date of measurement"},
+                                                           {"instrument_id", "instrument"},
+                                                           {"pass_energy_ev", "pass energy"},
+                                                           {"background", "background of the peak fit"},
+                                                           {"fit_model", "fit model"},
+                                                           {"charge_reference", "charge reference"},
+                                                           {"damage_check", "check for X-ray damage"}};
   std::vector<std::string> absent;
   for (const std::string& key : record_keys()) {
     if (!record_of(run, key).empty()) continue;
@@ -129,9 +148,10 @@ void write_not_stated(const Report& report, HtmlWriter& w) {
   if (!run.emission_sd_deg) absent.emplace_back("uncertainty of the emission angle");
   if (run.area_correlations.empty()) absent.emplace_back("correlation of the fitted areas");
   for (const Layer& layer : run.sample.layers) {
-    const bool above = std::any_of(report.all.routes.begin(), report.all.routes.end(), [&](const ThicknessRoute& route) {
-      return run.sample.position(layer.name) < run.sample.position(route.layer);
-    });
+    const bool above =
+        std::any_of(report.all.routes.begin(), report.all.routes.end(), [&](const ThicknessRoute& route) {
+          return run.sample.position(layer.name) < run.sample.position(route.layer);
+        });
     const bool measured = run.contamination && run.contamination->layer == layer.name;
     if (above && !measured && !layer.thickness_nm) absent.push_back("thickness of " + layer.name);
   }
@@ -141,7 +161,8 @@ void write_not_stated(const Report& report, HtmlWriter& w) {
   } else {
     w.paragraph("Absent from the run: " + joined(absent, 60) + ".");
   }
-  static const std::set<std::string> codes = {"assumed", "uncertainty_not_given", "scale_not_stated", "background_not_given"};
+  static const std::set<std::string> codes = {"assumed", "uncertainty_not_given", "scale_not_stated",
+                                              "background_not_given"};
   std::vector<std::string> instead;
   for (const FindingCount& f : report.findings) {
     if (codes.contains(f.finding.code) && instead.size() < kMostFindings) instead.push_back(f.finding.text);
@@ -154,14 +175,17 @@ void write_not_stated(const Report& report, HtmlWriter& w) {
 }
 
 void write_repeat(const Report& report, HtmlWriter& w) {
-  const bool drawn = std::any_of(report.all.results.begin(), report.all.results.end(), [](const ThicknessResult& r) { return r.monte_carlo.has_value(); });
+  const bool drawn = std::any_of(report.all.results.begin(), report.all.results.end(),
+                                 [](const ThicknessResult& r) { return r.monte_carlo.has_value(); });
   w.section("repeat", "To repeat these numbers");
   w.begin_facts();
   w.fact("Program", "pellicle " + std::string(version()));
-  if (!report.origin.inputs_sha256.empty()) w.fact_html("SHA-256 of the inputs", "<code>" + escaped(report.origin.inputs_sha256) + "</code>");
+  if (!report.origin.inputs_sha256.empty())
+    w.fact_html("SHA-256 of the inputs", "<code>" + escaped(report.origin.inputs_sha256) + "</code>");
   w.fact("Seed of the Monte Carlo draws", drawn ? std::to_string(report.run.uncertainty.seed) : "no draws were made");
   w.end_facts();
-  if (!report.origin.command.empty()) w.raw("<p>Command:</p>\n<pre><code>" + escaped(report.origin.command) + "</code></pre>\n");
+  if (!report.origin.command.empty())
+    w.raw("<p>Command:</p>\n<pre><code>" + escaped(report.origin.command) + "</code></pre>\n");
   w.end_section();
 }
 
@@ -171,9 +195,10 @@ std::string thickness_html(const Run& run, const ThicknessResults& results, cons
   const Report report = prepare(run, results, origin);
   HtmlWriter w;
   // Nothing may be fetched, whatever a specimen is called.
-  w.raw("<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n"
-        "<meta http-equiv=\"Content-Security-Policy\" content=\"default-src 'none'; style-src 'unsafe-inline'\">\n"
-        "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n<title>");
+  w.raw(
+      "<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n"
+      "<meta http-equiv=\"Content-Security-Policy\" content=\"default-src 'none'; style-src 'unsafe-inline'\">\n"
+      "<meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n<title>");
   w.raw(escaped(run.title.empty() ? "Film thickness" : run.title) + " – thickness report</title>\n<style>");
   w.raw(detail::kReportStyle);
   w.raw("</style>\n</head>\n<body>\n");
@@ -190,7 +215,9 @@ std::string thickness_html(const Run& run, const ThicknessResults& results, cons
   write_cautions(w);
   write_not_stated(report, w);
   write_repeat(report, w);
-  w.raw("</main>\n<footer>Words in square brackets and under Source are keys of pellicle's bibliography, reference/sources.bib.</footer>\n</body>\n</html>\n");
+  w.raw(
+      "</main>\n<footer>Words in square brackets and under Source are keys of pellicle's bibliography, "
+      "reference/sources.bib.</footer>\n</body>\n</html>\n");
   return w.take();
 }
 

@@ -19,13 +19,15 @@ std::string quantity_html(double value, const std::optional<double>& sd) {
   const std::string shown = value_with_uncertainty(value, sd);
   const std::size_t at = shown.find(kPlusMinus);
   if (at == std::string::npos) return data_html(value, shown);
-  return data_html(value, shown.substr(0, at)) + std::string(kPlusMinus) + data_html(*sd, shown.substr(at + kPlusMinus.size()));
+  return data_html(value, shown.substr(0, at)) + std::string(kPlusMinus) +
+         data_html(*sd, shown.substr(at + kPlusMinus.size()));
 }
 
 std::string quantity_html(const Quantity& q) { return quantity_html(q.value, q.standard_uncertainty); }
 
 std::string stated_html(const Quantity& q, std::string_view unit) {
-  return quantity_html(q) + (unit.empty() ? "" : " " + escaped(unit)) + (q.standard_uncertainty ? "" : ", uncertainty not given");
+  return quantity_html(q) + (unit.empty() ? "" : " " + escaped(unit)) +
+         (q.standard_uncertainty ? "" : ", uncertainty not given");
 }
 
 std::string interval_html(const Interval& i, double sd) {
@@ -45,7 +47,8 @@ bool several_tables(const Run& run) { return run.tables.size() > 1; }
 
 void note_cut(HtmlWriter& w, std::size_t shown, std::size_t all, const char* where) {
   if (all <= shown) return;
-  w.paragraph(fmt::format("{} of {} results shown; the other {} are in the {} result.", shown, all, all - shown, where), "remark");
+  w.paragraph(fmt::format("{} of {} results shown; the other {} are in the {} result.", shown, all, all - shown, where),
+              "remark");
 }
 
 }  // namespace pellicle::detail

@@ -34,8 +34,8 @@ struct Report {
   const Run& run;
   const ThicknessResults& all;
   const ReportOrigin& origin;
-  std::vector<FindingCount> findings;                  ///< each sentence once
-  std::vector<std::vector<std::size_t>> of_route;      ///< results of each route
+  std::vector<FindingCount> findings;              ///< each sentence once
+  std::vector<std::vector<std::size_t>> of_route;  ///< results of each route
 };
 
 void write_specimen(const Report& report, HtmlWriter& w);

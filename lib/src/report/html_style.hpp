@@ -41,14 +41,15 @@ dl > div { display: grid; grid-template-columns: 15rem 1fr; gap: 0 1.2rem; paddi
 dt { color: var(--soft); }
 dd { margin: 0; overflow-wrap: anywhere; }
 .wide { overflow-x: auto; margin: 1rem 0; }
-table { border-collapse: collapse; width: 100%; font-size: .92rem; font-variant-numeric: tabular-nums lining-nums; }
+table { border-collapse: collapse; width: 100%; font-size: .9rem; font-variant-numeric: tabular-nums lining-nums; }
 caption { text-align: left; font-weight: 600; padding-bottom: .35rem; }
-th, td { text-align: left; vertical-align: top; padding: .32rem .9rem .32rem 0; border-bottom: 1px solid var(--rule); }
+th, td { text-align: left; vertical-align: top; padding: .32rem .8rem .32rem 0; border-bottom: 1px solid var(--rule); }
 thead th { border-bottom: 1.5px solid var(--ink); vertical-align: bottom; font-weight: 600; }
 tbody th { font-weight: normal; }
 .n { text-align: right; white-space: nowrap; }
 .w { white-space: nowrap; }
 th.n { white-space: normal; }
+sub { font-size: .75em; line-height: 0; }
 figure { margin: 1.2rem 0; }
 figure svg { display: block; max-width: 100%; height: auto; }
 figcaption { color: var(--soft); font-size: .92rem; margin-top: .4rem; max-width: 46rem; }

@@ -12,7 +12,7 @@ const char* css_class(CellKind kind) {
   return kind == CellKind::number ? " class=\"n\"" : kind == CellKind::word ? " class=\"w\"" : "";
 }
 
-/// Escaped text in which words longer than a column may be broken.
+/// Escaped text in which words longer than a column, and codes with underscores, may be broken.
 std::string breakable(std::string_view text) {
   constexpr std::size_t kLongest = 22;
   const std::string whole = printable(text);
@@ -21,8 +21,10 @@ std::string breakable(std::string_view text) {
   for (std::size_t at = 0; at < whole.size(); ++at) {
     const bool starts = (static_cast<unsigned char>(whole[at]) & 0xC0U) != 0x80U;
     if (!starts) continue;
-    if (whole[at] == ' ') in_word = 0;
-    else if (++in_word > kLongest) {
+    const bool joint = at > 0 && whole[at - 1] == '_';
+    if (whole[at] == ' ') {
+      in_word = 0;
+    } else if (++in_word > kLongest || joint) {
       result += escaped(std::string_view(whole).substr(begin, at - begin)) + "<wbr>";
       begin = at;
       in_word = 1;
@@ -44,7 +46,8 @@ std::string data_html(double value, std::string_view shown) {
 }
 
 void HtmlWriter::section(std::string_view id, std::string_view title) {
-  html_ += fmt::format("<section aria-labelledby=\"{0}\">\n<h2 id=\"{0}\"><span class=\"count\">{1}</span> {2}</h2>\n", id, ++sections_, escaped(title));
+  html_ += fmt::format("<section aria-labelledby=\"{0}\">\n<h2 id=\"{0}\"><span class=\"count\">{1}</span> {2}</h2>\n",
+                       id, ++sections_, escaped(title));
 }
 
 void HtmlWriter::heading(std::string_view title) { html_ += "<h3>" + escaped(title) + "</h3>\n"; }
@@ -67,7 +70,8 @@ void HtmlWriter::fact_html(std::string_view name, std::string_view html) {
   html_ += "</dd></div>\n";
 }
 
-void HtmlWriter::table(std::string_view caption, const std::vector<std::string>& header, const std::vector<std::vector<Cell>>& rows) {
+void HtmlWriter::table(std::string_view caption, const std::vector<std::string>& header,
+                       const std::vector<std::vector<Cell>>& rows) {
   // A short table stays on one page.
   constexpr std::size_t kShort = 12;
   // A column is set like its first row; a header stands over its numbers.
@@ -76,14 +80,16 @@ void HtmlWriter::table(std::string_view caption, const std::vector<std::string>&
            "</caption>\n<thead><tr>";
   for (std::size_t c = 0; c < header.size(); ++c) {
     const bool number = !rows.empty() && rows[0][c].kind == CellKind::number;
-    html_ += fmt::format("<th scope=\"col\"{}>{}</th>", css_class(number ? CellKind::number : CellKind::text), breakable(header[c]));
+    html_ += fmt::format("<th scope=\"col\"{}>{}</th>", css_class(number ? CellKind::number : CellKind::text),
+                         breakable(header[c]));
   }
   html_ += "</tr></thead>\n<tbody>\n";
   for (const std::vector<Cell>& row : rows) {
     html_ += "<tr>";
     for (std::size_t c = 0; c < row.size(); ++c) {
       const char* kind = css_class(row[c].kind);
-      html_ += c == 0 ? fmt::format("<th scope=\"row\"{}>{}</th>", kind, row[c].html) : fmt::format("<td{}>{}</td>", kind, row[c].html);
+      html_ += c == 0 ? fmt::format("<th scope=\"row\"{}>{}</th>", kind, row[c].html)
+                      : fmt::format("<td{}>{}</td>", kind, row[c].html);
     }
     html_ += "</tr>\n";
   }

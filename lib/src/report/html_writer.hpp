@@ -40,7 +40,8 @@ class HtmlWriter {
   void end_facts() { html_ += "</dl>\n"; }
 
   /// Table with a caption and one header row; a row's first cell is its header.
-  void table(std::string_view caption, const std::vector<std::string>& header, const std::vector<std::vector<Cell>>& rows);
+  void table(std::string_view caption, const std::vector<std::string>& header,
+             const std::vector<std::vector<Cell>>& rows);
   /// An SVG with its caption.
   void figure(std::string_view svg, std::string_view caption);
 

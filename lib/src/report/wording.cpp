@@ -1,10 +1,10 @@
 #include "report/wording.hpp"
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <cmath>
 #include <map>
-
-#include <fmt/format.h>
 
 #include "pellicle/base/number.hpp"
 
@@ -101,12 +101,23 @@ std::string escaped(std::string_view text) {
   std::string result;
   for (const char c : printable(text)) {
     switch (c) {
-      case '&': result += "&amp;"; break;
-      case '<': result += "&lt;"; break;
-      case '>': result += "&gt;"; break;
-      case '"': result += "&quot;"; break;
-      case '\'': result += "&#39;"; break;
-      default: result += c;
+      case '&':
+        result += "&amp;";
+        break;
+      case '<':
+        result += "&lt;";
+        break;
+      case '>':
+        result += "&gt;";
+        break;
+      case '"':
+        result += "&quot;";
+        break;
+      case '\'':
+        result += "&#39;";
+        break;
+      default:
+        result += c;
     }
   }
   return result;
@@ -150,7 +161,8 @@ std::string route_words(const Run& run, const ThicknessRoute& route) {
   if (route.layer.empty()) return run.sample.substrate.id;
   const std::string& material = run.sample.material(route.layer).id;
   const std::string film = material == route.layer ? route.layer : route.layer + " (" + material + ")";
-  return film + " on " + run.sample.substrate.id;
+  const std::size_t below = run.sample.position(route.layer) + 1;
+  return film + " on " + (below < run.sample.layers.size() ? run.sample.layers[below].name : run.sample.substrate.id);
 }
 
 std::string lines_words(const Run& run, const ThicknessRoute& route) {

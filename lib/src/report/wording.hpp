@@ -38,7 +38,7 @@ namespace pellicle::detail {
 /// "attenuation length" for length_nm: an input of the budget for people.
 [[nodiscard]] std::string input_words(std::string_view name);
 
-/// "oxide on Al".
+/// "oxide on Al": the layer of a route and what lies below it.
 [[nodiscard]] std::string route_words(const Run& run, const ThicknessRoute& route);
 
 /// "Al 2p oxide over Al 2p metal", the lines a route uses.

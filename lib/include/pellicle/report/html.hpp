@@ -19,6 +19,7 @@ struct ReportOrigin {
 
 /// The report as a whole HTML document. The same run, results and origin give the same bytes.
 /// Tables hold at most 200 results each; JSON and CSV hold all.
-[[nodiscard]] std::string thickness_html(const Run& run, const ThicknessResults& results, const ReportOrigin& origin = {});
+[[nodiscard]] std::string thickness_html(const Run& run, const ThicknessResults& results,
+                                         const ReportOrigin& origin = {});
 
 }  // namespace pellicle

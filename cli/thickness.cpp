@@ -6,6 +6,7 @@
 #include "command.hpp"
 #include "material_options.hpp"
 #include "pellicle/pellicle.hpp"
+#include "picture.hpp"
 
 namespace pellicle::cli {
 namespace {
@@ -22,6 +23,7 @@ struct Options {
   std::optional<double> photon_energy_ev;
   MaterialOverrides film_overrides;
   QuantityOption emission, takeoff, film_area, substrate_area, reference_ratio, reference_film_area, reference_substrate_area, length;
+  PictureOptions picture;
   Output output;
 };
 
@@ -147,7 +149,7 @@ void set_uncertainty(const Options& o, pellicle::Run& run) {
   if (o.interval == "adaptive") run.uncertainty.method = IntervalMethod::adaptive_monte_carlo;
 }
 
-int thickness(const Options& o) {
+int thickness(const Options& o, const CLI::App& command) {
   pellicle::Run run = o.run_file.empty() ? run_from_options(o) : read_run_file(o.run_file, o.tables);
   set_uncertainty(o, run);
   ProgressLine progress(o.output, "results");
@@ -156,6 +158,10 @@ int thickness(const Options& o) {
   deliver(o.output, o.output.json  ? thickness_json(run, results)
                     : o.output.csv ? thickness_csv(run, results)
                                    : thickness_text(run, results));
+  if (!o.picture.report.empty()) {
+    deliver_report(o.picture, o.output, thickness_html(run, results, {inputs_sha256(run), repeating_command(command)}));
+  }
+  if (o.picture.plot) deliver_plot(o.picture, o.output, result_figure(run, results));
   return exit_code(o, results);
 }
 
@@ -166,6 +172,7 @@ Run add_thickness(CLI::App& app) {
   CLI::App* c = app.add_subcommand("thickness", "Film thickness from a line in film and substrate, with budget and findings.");
   c->footer("  pellicle thickness coupon.toml\n"
             "  pellicle thickness coupon.toml --json --out coupon.json\n"
+            "  pellicle thickness coupon.toml --report coupon.html --plot coupon.svg\n"
             "  pellicle thickness coupon.toml --areas week-1.csv week-2.csv --csv --out all.csv\n"
             "  pellicle thickness --film SiO2 --substrate Si --line \"Si 2p\" --source \"Al Ka\" --emission-deg 34 \\\n"
             "      --film-area 20000 --substrate-area 10000 --area-unit counts --reference-ratio 0.9329 \\\n"
@@ -196,20 +203,22 @@ Run add_thickness(CLI::App& app) {
       ->type_name("METHOD");
   c->add_option("--draws", o->draws, "Monte Carlo draws (default 1000000)")->type_name("NUMBER");
   c->add_option("--seed", o->seed, "seed of the Monte Carlo draws (default 1)")->type_name("NUMBER");
+  add_picture_options(*c, o->picture);
   add_output_options(*c, o->output, true, true);
   // What describes a measurement on the command line makes no sense beside a run file.
   static const std::vector<std::string> with_file = {"--json", "--csv", "--out", "--strict", "--quiet", "--help",
-                                                     "--areas", "--interval", "--draws", "--seed"};
+                                                     "--areas", "--interval", "--draws", "--seed", "--plot", "--report"};
   std::vector<const CLI::Option*> alone;
   for (const CLI::Option* option : c->get_options()) {
     if (option != file && std::find(with_file.begin(), with_file.end(), option->get_name()) == with_file.end()) alone.push_back(option);
   }
-  return [o, alone] {
+  return [o, alone, c] {
+    check_picture_options(o->picture, o->output);
     const auto used = std::find_if(alone.begin(), alone.end(), [](const CLI::Option* option) { return option->count() > 0; });
     if (o->run_file.empty() && !o->tables.empty()) throw UsageError("--areas needs a run file");
     if (!o->run_file.empty() && used != alone.end()) throw UsageError((*used)->get_name() + " cannot stand beside a run file; write it into the run file");
     if (o->run_file.empty() && used == alone.end()) throw UsageError("give a run file, or --film, --substrate, --line, --source, an angle, areas and a reference");
-    return thickness(*o);
+    return thickness(*o, *c);
   };
 }
 

@@ -42,4 +42,5 @@
 #include "pellicle/io/run_file.hpp"
 #include "pellicle/io/starter.hpp"
 #include "pellicle/report/figure.hpp"
+#include "pellicle/report/html.hpp"
 #include "pellicle/report/text.hpp"

@@ -293,6 +293,8 @@ std::string thickness_json(const Run& run, const ThicknessResults& results) {
   return document("thickness", run_json(run), rows, summaries_json(run, results), drawn ? std::optional(run.uncertainty.seed) : std::nullopt);
 }
 
+std::string inputs_sha256(const Run& run) { return detail::sha256_hex(run_json(run).dump()); }
+
 std::string materials_json(const std::vector<Material>& materials) {
   Json rows = Json::array();
   for (const Material& m : materials) rows.push_back(material_json(m));

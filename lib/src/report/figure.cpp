@@ -1,13 +1,13 @@
 #include "pellicle/report/figure.hpp"
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <array>
 #include <cmath>
 #include <map>
 #include <set>
 #include <tuple>
-
-#include <fmt/format.h>
 
 #include "pellicle/base/error.hpp"
 #include "pellicle/base/number.hpp"
@@ -30,18 +30,17 @@ constexpr std::size_t kMostIntervals = 60;
 constexpr std::size_t kGroups = 200;
 /// Spots named on the axis; more are counted.
 constexpr std::size_t kMostNames = 40;
-/// Spots that get a marker of their own against the angle.
-constexpr std::size_t kMostSpots = 6;
 constexpr double kNormal95 = 1.959963984540054;
-constexpr std::array kMarkers = {Marker::disc, Marker::square, Marker::triangle, Marker::diamond, Marker::ring};
+/// A ring is an outlier, a cross has no thickness.
+constexpr std::array kMarkers = {Marker::disc, Marker::square, Marker::triangle, Marker::diamond};
 
 /// Where every result stands on the horizontal axis.
 struct Places {
   bool by_angle = false;
-  std::vector<std::size_t> members;   ///< results drawn
-  std::vector<double> position;       ///< of each member: the angle, or the count of its measurement from 0
-  std::vector<std::string> names;     ///< of the measurements
-  std::size_t count = 0;              ///< measurements
+  std::vector<std::size_t> members;  ///< results drawn
+  std::vector<double> position;      ///< of each member: the angle, or the count of its measurement from 0
+  std::vector<std::string> names;    ///< of the measurements
+  std::size_t count = 0;             ///< measurements
 };
 
 Places places_of(const Run& run, const ThicknessResults& all, std::optional<std::size_t> route) {
@@ -79,7 +78,15 @@ class SeriesSet {
     if (fresh) series_.push_back({name, marker, arrow, {}, shift});
     return series_[at->second];
   }
-  std::vector<PointSeries> take() { return std::move(series_); }
+  /// Thicknesses first, then outliers, bounds and what has no thickness.
+  std::vector<PointSeries> take() {
+    const auto rank = [](const PointSeries& s) {
+      if (s.marker == Marker::cross) return 3;
+      return s.arrow != Arrow::none ? 2 : s.marker == Marker::ring ? 1 : 0;
+    };
+    std::stable_sort(series_.begin(), series_.end(), [&](const auto& a, const auto& b) { return rank(a) < rank(b); });
+    return std::move(series_);
+  }
 
  private:
   std::map<std::string, std::size_t> index_;
@@ -92,8 +99,9 @@ struct Names {
 
 Names names_for(const std::string& prefix, bool intervals = true) {
   const std::string front = prefix.empty() ? "" : prefix + ": ";
-  return {front + (intervals ? "thickness with 95 % interval" : "thickness, bar: repeatability alone (95 %)"), front + "at most (95 % bound)", front + "at least (95 % bound)",
-          front + "no thickness", front + "outlier"};
+  const char* bars = intervals ? "95 % interval (thick bar: repeatability alone)" : "bar: repeatability alone (95 %)";
+  return {(prefix.empty() ? "thickness, " : front) + bars, front + "at most (95 % bound)",
+          front + "at least (95 % bound)", front + "no thickness", front + "outlier"};
 }
 
 FigurePoint point_of(const ThicknessResult& r, double x, bool intervals) {
@@ -108,7 +116,7 @@ FigurePoint point_of(const ThicknessResult& r, double x, bool intervals) {
 /// What one route adds to a picture.
 struct Drawn {
   std::size_t route = 0;
-  std::string prefix;              ///< in the key, when there are several
+  std::string prefix;  ///< in the key, when there are several
   double shift = 0.0;
   std::set<std::size_t> outliers;  ///< positions in ThicknessResults::results
 };
@@ -119,11 +127,11 @@ double sidestep(std::size_t k, std::size_t n, double pitch) {
 }
 
 /// Every result by itself.
-void add_each(const Run& run, const ThicknessResults& all, const Places& places, const Drawn& drawn, double from,
+void add_each(const Run& run, const ThicknessResults& all, const Places& places, const Drawn& drawn, double foot,
               SeriesSet& series) {
   std::set<std::string> spots;
   for (const std::size_t i : places.members) spots.insert(spot_words(run, all.results[i]));
-  const bool by_spot = places.by_angle && spots.size() > 1 && spots.size() <= kMostSpots;
+  const bool by_spot = places.by_angle && spots.size() > 1 && spots.size() <= kMarkers.size();
   const bool intervals = places.members.size() <= kMostIntervals;
   for (std::size_t k = 0; k < places.members.size(); ++k) {
     const std::size_t i = places.members[k];
@@ -143,14 +151,15 @@ void add_each(const Run& run, const ThicknessResults& all, const Places& places,
     const double x = places.position[k];
     if (r.thickness) {
       const bool odd = drawn.outliers.contains(i);
-      PointSeries& s = series.get(odd ? names.outlier : names.thickness, odd ? Marker::ring : shape, Arrow::none, shift);
+      PointSeries& s =
+          series.get(odd ? names.outlier : names.thickness, odd ? Marker::ring : shape, Arrow::none, shift);
       s.points.push_back(point_of(r, x, intervals));
     } else if (r.bound) {
       const bool upper = r.bound->upper;
       PointSeries& s = series.get(upper ? names.upper : names.lower, shape, upper ? Arrow::down : Arrow::up, shift);
       s.points.push_back({x, r.bound->at95_nm});
     } else {
-      series.get(names_for(drawn.prefix).failed, Marker::cross, Arrow::none, shift).points.push_back({x, from});
+      series.get(names_for(drawn.prefix).failed, Marker::cross, Arrow::none, shift).points.push_back({x, foot});
     }
   }
 }
@@ -162,7 +171,7 @@ double median(std::vector<double>& values) {
 }
 
 /// Successive results together: the median, and a bar from the lowest to the highest thickness.
-void add_groups(const ThicknessResults& all, const Places& places, const Drawn& drawn, double from, SeriesSet& series) {
+void add_groups(const ThicknessResults& all, const Places& places, const Drawn& drawn, double foot, SeriesSet& series) {
   const std::size_t size = (places.count + kGroups - 1) / kGroups;
   struct Group {
     std::vector<double> values, upper, lower;
@@ -197,7 +206,7 @@ void add_groups(const ThicknessResults& all, const Places& places, const Drawn& 
     }
     if (!group.upper.empty()) series.get(names.upper, shape, Arrow::down).points.push_back({x, median(group.upper)});
     if (!group.lower.empty()) series.get(names.lower, shape, Arrow::up).points.push_back({x, median(group.lower)});
-    if (group.failed) series.get(names.failed, Marker::cross).points.push_back({x, from});
+    if (group.failed) series.get(names.failed, Marker::cross).points.push_back({x, foot});
   }
   for (std::size_t k = 0, odd = 0; k < places.members.size() && odd < kGroups; ++k) {
     const ThicknessResult& r = all.results[places.members[k]];
@@ -249,8 +258,9 @@ void add_mean(const ThicknessSummary& s, Figure& figure) {
   const double scale = kNormal95 * s.scale_nm;
   const bool band = s.scale_stated && scale > 0.0;
   const std::string mean = detail::value_words(s.mean_nm, std::max(s.scale_nm, s.repeatability_of_mean_nm)) + " nm";
-  figure.lines.push_back({false, s.mean_nm, "mean of " + std::to_string(s.count) + ": " + mean +
-                                                (s.scale_stated ? "" : " (thickness scale not stated)")});
+  figure.lines.push_back(
+      {false, s.mean_nm,
+       "mean of " + std::to_string(s.count) + ": " + mean + (s.scale_stated ? "" : " (thickness scale not stated)")});
   if (band) {
     figure.bands.push_back({std::max(0.0, s.mean_nm - scale), s.mean_nm + scale,
                             "thickness scale about the mean (95 %), moves all spots together"});
@@ -263,20 +273,22 @@ std::string caption_of(const ThicknessResults& all, const Places& places, const 
     const ThicknessResult& r = all.results[i];
     ++(r.thickness ? values : r.bound ? bounds : failed);
   }
-  std::string text = counted(values, "thickness", "thicknesses") + " against " +
-                     (places.by_angle ? "the emission angle" : "the spot");
+  std::string text =
+      counted(values, "thickness", "thicknesses") + " against " + (places.by_angle ? "the emission angle" : "the spot");
   if (bounds > 0) text += ", " + counted(bounds, "bound as an arrow", "bounds as arrows");
   if (failed > 0) text += ", " + counted(failed, "cross without a thickness", "crosses without a thickness");
   text += ".";
   const bool each = places.members.size() <= kMostPoints;
   if (values > 0 && places.members.size() <= kMostIntervals) {
-    text += " Thin bars: 95 % interval of each result, thickness scale included. Thick bars: repeatability alone (95 %).";
+    text +=
+        " Thin bars: 95 % interval of each result, thickness scale included. Thick bars: repeatability alone (95 %).";
   } else if (values > 0 && each) {
     text += " Bars: repeatability alone (95 %).";
   }
   if (values > 0 && !each) {
-    text += " Too many to draw one by one: each mark is the median of several results, its bar reaches from the lowest "
-            "to the highest of them.";
+    text +=
+        " Too many to draw one by one: each mark is the median of several results, its bar reaches from the lowest "
+        "to the highest of them.";
   }
   for (const FigureLine& line : figure.lines) {
     if (!line.vertical) text += " Line: " + line.name + ".";
@@ -295,7 +307,7 @@ void set_spot_axis(const ThicknessResults& all, const Places& places, Figure& fi
     const double air = 0.06 * (high - low);
     figure.x = {"emission angle from the surface normal", "°", low - air, high + air, {}};
     constexpr double kGrazing = 60.0;
-    if (high > kGrazing) figure.lines.push_back({true, kGrazing, "60°: beyond it a constant length fails"});
+    if (high > kGrazing) figure.lines.push_back({true, kGrazing, "60°: above, elastic scattering changes the length"});
     return;
   }
   const double count = static_cast<double>(places.count);
@@ -337,6 +349,8 @@ Figure thickness_figure(const Run& run, const ThicknessResults& results, std::op
   figure.y.unit = "nm";
   std::tie(figure.y.low, figure.y.high) = thickness_range(results, places, figure);
 
+  // What has no thickness stands at the foot of the picture, clear of the axis.
+  const double foot = figure.y.low + 0.03 * (figure.y.high - figure.y.low);
   SeriesSet series;
   for (std::size_t n = 0; n < routes.size(); ++n) {
     Drawn drawn;
@@ -347,12 +361,12 @@ Figure thickness_figure(const Run& run, const ThicknessResults& results, std::op
     const ThicknessRoute& p = results.routes[drawn.route];
     if (routes.size() > 1) drawn.prefix = p.layer + ", " + lines_words(run, p);
     if (places.members.size() > kMostPoints) {
-      add_groups(results, places, drawn, figure.y.low, series);
+      add_groups(results, places, drawn, foot, series);
       continue;
     }
     const double places_across = places.by_angle ? 90.0 : static_cast<double>(std::max<std::size_t>(places.count, 1));
     drawn.shift = sidestep(n, routes.size(), places.by_angle ? 0.011 : std::min(0.16 / places_across, 0.03));
-    add_each(run, results, places, drawn, figure.y.low, series);
+    add_each(run, results, places, drawn, foot, series);
   }
   figure.points = series.take();
   set_spot_axis(results, places, figure);
@@ -366,7 +380,7 @@ Figure budget_figure(const Run& run, const ThicknessResults& results, std::size_
   const Budget& budget = r.thickness->budget;
   Figure figure;
   figure.title = "Uncertainty budget of " + route_words(run, results.routes[r.route]) + ": spot " + spot_words(run, r) +
-                 ", " + rounded_text(r.emission_deg, 4) + "° emission";
+                 ", " + detail::angle_words(r.emission_deg) + "° emission";
   figure.subtitle = run.title;
   BarSeries scale{"thickness scale: common to all spots, does not average", Fill::solid, {}};
   BarSeries repeatability{"repeatability: falls with the number of spots", Fill::hatched, {}};
@@ -382,7 +396,8 @@ Figure budget_figure(const Run& run, const ThicknessResults& results, std::size_
     const double percent = 100.0 * row.share;
     figure.y.names.push_back(input_words(row.name));
     (row.kind == ContributionKind::scale ? scale : repeatability).bars.push_back({y, percent});
-    figure.texts.push_back({std::max(percent, 0.0), y, fmt::format("{:.1f} % ({} nm)", percent, rounded_text(row.contribution, 2))});
+    figure.texts.push_back(
+        {std::max(percent, 0.0), y, fmt::format("{:.1f} % ({} nm)", percent, rounded_text(row.contribution, 2))});
     lowest = std::min(lowest, percent);
     highest = std::max(highest, percent);
   }
@@ -404,8 +419,9 @@ Figure budget_figure(const Run& run, const ThicknessResults& results, std::size_
   figure.y.low = static_cast<double>(figure.y.names.size()) - 0.4;
   figure.y.high = -0.6;
   if (lowest < 0.0) figure.lines.push_back({true, 0.0, ""});
-  figure.caption = "Share of each input in the variance of the thickness of spot " + spot_words(run, r) + ", standard uncertainty " +
-                   rounded_text(budget.standard_uncertainty, 2) + " nm after the GUM; in brackets what the input alone contributes.";
+  figure.caption = "Share of each input in the variance of the thickness of spot " + spot_words(run, r) +
+                   ", standard uncertainty " + rounded_text(budget.standard_uncertainty, 2) +
+                   " nm after the GUM; in brackets what the input alone contributes.";
   if (left_out > 0) figure.caption += " " + counted(left_out, "input", "inputs") + " below 0.1 % left out.";
   if (lowest < 0.0) figure.caption += " A share below zero: correlation takes away what other inputs add.";
   return figure;

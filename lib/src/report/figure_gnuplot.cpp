@@ -1,12 +1,12 @@
 // Writes figures as gnuplot scripts. Numbers go through inline data blocks. Text from outside stands between single
 // quotes alone: there gnuplot expands neither backquotes nor backslashes nor macros, and '' is the only escape.
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <array>
 #include <cctype>
 #include <cmath>
-
-#include <fmt/format.h>
 
 #include "pellicle/report/figure.hpp"
 #include "report/wording.hpp"
@@ -40,18 +40,25 @@ std::string tick_name(std::string_view text, std::size_t most) {
 
 std::string names(const std::vector<std::string>& all, std::size_t most) {
   std::string list;
-  for (std::size_t i = 0; i < all.size(); ++i) list += fmt::format("{}{} {}", i == 0 ? "" : ", ", tick_name(all[i], most), i);
+  for (std::size_t i = 0; i < all.size(); ++i)
+    list += fmt::format("{}{} {}", i == 0 ? "" : ", ", tick_name(all[i], most), i);
   return list;
 }
 
 int point_type(Marker marker) {
   switch (marker) {
-    case Marker::disc: return 7;
-    case Marker::ring: return 6;
-    case Marker::square: return 5;
-    case Marker::diamond: return 13;
-    case Marker::triangle: return 9;
-    case Marker::cross: break;
+    case Marker::disc:
+      return 7;
+    case Marker::ring:
+      return 6;
+    case Marker::square:
+      return 5;
+    case Marker::diamond:
+      return 13;
+    case Marker::triangle:
+      return 9;
+    case Marker::cross:
+      break;
   }
   return 2;
 }
@@ -61,14 +68,22 @@ std::string terminal_line(const Figure& figure, PlotFormat format, int columns, 
   const int height = figure.y.names.empty() ? 540 : std::min(200 + 40 * bars, 4000);
   switch (format) {
     case PlotFormat::svg:
-      return fmt::format("set terminal svg noenhanced size 860,{} font 'Helvetica,Arial,sans-serif,14' background rgb 'white'\n", height);
+      return fmt::format(
+          "set terminal svg noenhanced size 860,{} font 'Helvetica,Arial,sans-serif,14' background rgb 'white'\n",
+          height);
     case PlotFormat::png:
-      return fmt::format("set terminal pngcairo noenhanced size 1720,{} fontscale 1.0 font 'sans,24' linewidth 2 pointscale 2 background rgb 'white'\n", 2 * height);
+      return fmt::format(
+          "set terminal pngcairo noenhanced size 1720,{} fontscale 1.0 font 'sans,24' linewidth 2 pointscale 2 "
+          "background rgb 'white'\n",
+          2 * height);
     case PlotFormat::pdf:
-      return fmt::format("set terminal pdfcairo noenhanced size 18cm,{:.1f}cm font 'sans,10' background rgb 'white'\n", 18.0 * height / 860.0);
-    case PlotFormat::terminal: break;
+      return fmt::format("set terminal pdfcairo noenhanced size 18cm,{:.1f}cm font 'sans,10' background rgb 'white'\n",
+                         18.0 * height / 860.0);
+    case PlotFormat::terminal:
+      break;
   }
-  return fmt::format("set terminal dumb noenhanced mono size {},{}\n", std::clamp(columns, 40, 400), std::clamp(rows, 16, 200));
+  return fmt::format("set terminal dumb nofeed noenhanced mono size {},{}\n", std::clamp(columns, 40, 400),
+                     std::clamp(rows, 16, 200));
 }
 
 /// One element of the plot command, and the data block it reads.
@@ -85,7 +100,9 @@ struct Plots {
 
 std::string title_of(const std::string& name) { return name.empty() ? " notitle" : " title " + quoted(name); }
 
-double shifted(const Figure& figure, const PointSeries& s, double x) { return x + s.shift * (figure.x.high - figure.x.low); }
+double shifted(const Figure& figure, const PointSeries& s, double x) {
+  return x + s.shift * (figure.x.high - figure.x.low);
+}
 
 void add_points(const Figure& figure, Plots& plots) {
   const double arrow = 0.07 * (figure.y.high - figure.y.low);
@@ -120,7 +137,8 @@ void add_bars(const Figure& figure, Plots& plots) {
   for (const BarSeries& s : figure.bars) {
     std::string data;
     for (const FigureBar& b : s.bars) {
-      data += fmt::format("{} {} {} {} {} {}\n", b.length, b.y, std::min(0.0, b.length), std::max(0.0, b.length), b.y - 0.3, b.y + 0.3);
+      data += fmt::format("{} {} {} {} {} {}\n", b.length, b.y, std::min(0.0, b.length), std::max(0.0, b.length),
+                          b.y - 0.3, b.y + 0.3);
     }
     const std::string fill = s.fill == Fill::solid ? "fillstyle solid 1.0 border" : "fillstyle pattern 4 border";
     plots.add(data, fmt::format("using 1:2:3:4:5:6 with boxxyerror {} lw 1.5 lc rgb '{}'{}", fill,
@@ -136,7 +154,8 @@ void add_bands_and_lines(const Figure& figure, Plots& plots) {
   for (const FigureLine& line : figure.lines) {
     const std::string data = line.vertical ? fmt::format("{0} {1}\n{0} {2}\n", line.at, figure.y.low, figure.y.high)
                                            : fmt::format("{1} {0}\n{2} {0}\n", line.at, figure.x.low, figure.x.high);
-    plots.add(data, std::string("using 1:2 with lines lw 1.5 lc rgb '#17222b' dt ") + (line.vertical ? "2" : "1") + title_of(line.name));
+    plots.add(data, std::string("using 1:2 with lines lw 1.5 lc rgb '#17222b' dt ") + (line.vertical ? "2" : "1") +
+                        title_of(line.name));
   }
 }
 
@@ -151,11 +170,14 @@ class CharacterPlots {
 
   void add_all() {
     for (const FigureBand& band : figure_.bands) {
-      add(horizontal(band.low, figure_.x.low, figure_.x.high) + horizontal(band.high, figure_.x.low, figure_.x.high), '.', band.name);
+      add(horizontal(band.low, figure_.x.low, figure_.x.high) + horizontal(band.high, figure_.x.low, figure_.x.high),
+          '.', band.name);
     }
     for (const FigureLine& line : figure_.lines) {
-      if (line.vertical) add(vertical(line.at, figure_.y.low, figure_.y.high), ':', line.name);
-      else add(horizontal(line.at, figure_.x.low, figure_.x.high), '-', line.name);
+      if (line.vertical)
+        add(vertical(line.at, figure_.y.low, figure_.y.high), ':', line.name);
+      else
+        add(horizontal(line.at, figure_.x.low, figure_.x.high), '-', line.name);
     }
     for (const BarSeries& s : figure_.bars) {
       std::string data;
@@ -179,12 +201,18 @@ class CharacterPlots {
  private:
   static char character(Marker marker) {
     switch (marker) {
-      case Marker::disc: return 'o';
-      case Marker::ring: return 'O';
-      case Marker::square: return 'H';
-      case Marker::diamond: return 'V';
-      case Marker::triangle: return 'A';
-      case Marker::cross: break;
+      case Marker::disc:
+        return 'o';
+      case Marker::ring:
+        return 'O';
+      case Marker::square:
+        return 'H';
+      case Marker::diamond:
+        return 'V';
+      case Marker::triangle:
+        return 'A';
+      case Marker::cross:
+        break;
     }
     return 'x';
   }
@@ -207,9 +235,15 @@ class CharacterPlots {
   double step_x_, step_y_;
 };
 
-/// Letters that every font has; turned text in others breaks where a font is missing.
-bool plain_letters(const std::string& text) {
-  return std::all_of(text.begin(), text.end(), [](char c) { return static_cast<unsigned char>(c) < 0xD6; });
+Figure with_european_text(Figure figure) {
+  for (std::string* text : {&figure.title, &figure.subtitle, &figure.x.label, &figure.y.label})
+    *text = detail::european(*text);
+  for (FigureAxis* axis : {&figure.x, &figure.y}) {
+    for (std::string& name : axis->names) name = detail::european(name);
+  }
+  for (PointSeries& s : figure.points) s.name = detail::european(s.name);
+  for (FigureText& t : figure.texts) t.text = detail::european(t.text);
+  return figure;
 }
 
 /// Names along the horizontal axis: flat where they fit, tilted where not; counted where neither is possible.
@@ -218,13 +252,9 @@ std::string name_ticks(const Figure& figure, bool terminal, int columns) {
   const std::size_t count = figure.x.names.size();
   const std::size_t room = static_cast<std::size_t>(terminal ? std::max(columns - 14, 20) : 92) / count;
   std::size_t longest = 0;
-  bool plain = true;
-  for (const std::string& name : figure.x.names) {
-    longest = std::max(longest, detail::characters(printable(name)));
-    plain = plain && plain_letters(printable(name));
-  }
+  for (const std::string& name : figure.x.names) longest = std::max(longest, detail::characters(printable(name)));
   if (longest < room) return "set xtics (" + names(figure.x.names, room) + ")\n";
-  if (plain && !terminal) return "set xtics rotate by 50 right (" + names(figure.x.names, kTilted) + ")\n";
+  if (!terminal) return "set xtics rotate by 50 right (" + names(figure.x.names, kTilted) + ")\n";
   if (room >= 12) return "set xtics (" + names(figure.x.names, room - 2) + ")\n";
   std::string numbers;
   const std::size_t step = 1 + 4 * count / static_cast<std::size_t>(columns);
@@ -237,7 +267,8 @@ std::string axis_lines(const Figure& figure, bool terminal, int columns) {
   const std::size_t most = terminal ? 24 : 32;
   text += "set xlabel " + quoted(figure.x.text()) + (terminal ? "" : " offset 0,0.6") + "\n";
   if (figure.y.names.empty()) text += "set ylabel " + quoted(figure.y.text()) + "\n";
-  text += fmt::format("set xrange [{}:{}]\nset yrange [{}:{}]\n", figure.x.low, figure.x.high, figure.y.low, figure.y.high);
+  text +=
+      fmt::format("set xrange [{}:{}]\nset yrange [{}:{}]\n", figure.x.low, figure.x.high, figure.y.low, figure.y.high);
   if (!figure.x.names.empty()) text += name_ticks(figure, terminal, columns);
   if (!figure.y.names.empty()) text += "set ytics (" + names(figure.y.names, most) + ")\n";
   return text;
@@ -257,7 +288,10 @@ std::optional<PlotFormat> plot_format(std::string_view path) {
   return std::nullopt;
 }
 
-std::string gnuplot_script(const Figure& figure, PlotFormat format, int columns, int rows) {
+std::string gnuplot_script(const Figure& original, PlotFormat format, int columns, int rows) {
+  // Where a font lacks a character, the cairo terminals draw a box as large as the picture.
+  const bool cairo = format == PlotFormat::png || format == PlotFormat::pdf;
+  const Figure figure = cairo ? with_european_text(original) : original;
   const bool terminal = format == PlotFormat::terminal;
   columns = std::clamp(columns, 40, 400);
   rows = std::clamp(rows, 16, 200);
@@ -265,7 +299,9 @@ std::string gnuplot_script(const Figure& figure, PlotFormat format, int columns,
   script += "set title " + quoted(figure.title, terminal ? static_cast<std::size_t>(columns) - 4 : 92);
   if (!figure.subtitle.empty() && !terminal) script += ".\"\\n\"." + quoted(figure.subtitle, 92);
   script += "\n" + axis_lines(figure, terminal, columns);
-  script += "set border 3\nset tics nomirror out\nset key below left reverse Left width 1\nset bars 0.6\n";
+  script +=
+      "set border 3\nset tics nomirror out\nset key below left reverse Left width 1 height 1\nset bars 0.6\nset "
+      "pointintervalbox 0\n";
   for (const FigureText& t : figure.texts) {
     script += fmt::format("set label {} at {},{} left offset 1,0\n", quoted(t.text), t.x, t.y);
   }
@@ -273,7 +309,8 @@ std::string gnuplot_script(const Figure& figure, PlotFormat format, int columns,
   if (terminal) {
     CharacterPlots(figure, columns, rows, plots).add_all();
   } else {
-    script += figure.points.empty() ? "set grid xtics lc rgb '#dde4e8' lt 1\n" : "set grid ytics lc rgb '#dde4e8' lt 1\n";
+    script +=
+        figure.points.empty() ? "set grid xtics lc rgb '#dde4e8' lt 1\n" : "set grid ytics lc rgb '#dde4e8' lt 1\n";
     add_bands_and_lines(figure, plots);
     add_bars(figure, plots);
     add_points(figure, plots);

@@ -1,11 +1,11 @@
 // Draws figures as SVG. Coordinates are pixels of a canvas of fixed width; y grows downward.
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <array>
 #include <cmath>
 #include <functional>
-
-#include <fmt/format.h>
 
 #include "pellicle/report/figure.hpp"
 #include "report/wording.hpp"
@@ -42,7 +42,9 @@ double text_width(std::string_view text, double size) {
   return static_cast<double>(characters(text)) * size * kCharacterWidth;
 }
 
-std::size_t fitting(double width, double size) { return static_cast<std::size_t>(std::max(4.0, width / (size * kCharacterWidth))); }
+std::size_t fitting(double width, double size) {
+  return static_cast<std::size_t>(std::max(4.0, width / (size * kCharacterWidth)));
+}
 
 /// Coordinate to a tenth of a pixel.
 std::string px(double value) {
@@ -73,7 +75,8 @@ Ticks round_ticks(double low, double high, int about) {
   const double lead = rough / power;
   const double step = power * (lead < 1.5 ? 1.0 : lead < 3.5 ? 2.0 : lead < 7.5 ? 5.0 : 10.0);
   ticks.decimals = std::max(0, -static_cast<int>(std::floor(std::log10(step) + 1e-9)));
-  for (double k = std::ceil(low / step - 1e-9); k * step <= high + 1e-9 * span; k += 1.0) ticks.values.push_back(k * step);
+  for (double k = std::ceil(low / step - 1e-9); k * step <= high + 1e-9 * span; k += 1.0)
+    ticks.values.push_back(k * step);
   return ticks;
 }
 
@@ -89,7 +92,9 @@ struct Area {
   double left, top, width, height;
 
   double x(double value) const { return left + (value - figure.x.low) / (figure.x.high - figure.x.low) * width; }
-  double y(double value) const { return top + height - (value - figure.y.low) / (figure.y.high - figure.y.low) * height; }
+  double y(double value) const {
+    return top + height - (value - figure.y.low) / (figure.y.high - figure.y.low) * height;
+  }
   double right() const { return left + width; }
   double bottom() const { return top + height; }
   double inside_y(double value) const { return std::clamp(y(value), top, bottom()); }
@@ -98,12 +103,17 @@ struct Area {
 /// Outline of a marker, to be appended to the path of its series. @param r half its size
 std::string marker_path(Marker marker, double x, double y, double r) {
   switch (marker) {
-    case Marker::square: return fmt::format("M{0} {1}h{2}v{2}h-{2}z", px(x - 0.9 * r), px(y - 0.9 * r), px(1.8 * r));
-    case Marker::diamond: return fmt::format("M{0} {1}l{2} {2} -{2} {2} -{2} -{2}z", px(x), px(y - 1.2 * r), px(1.2 * r));
-    case Marker::triangle: return fmt::format("M{} {}l{} {}h-{}z", px(x), px(y - 1.2 * r), px(1.1 * r), px(2.0 * r), px(2.2 * r));
-    case Marker::cross: return fmt::format("M{0} {1}l{2} {2}m0-{2}l-{2} {2}", px(x - 0.9 * r), px(y - 0.9 * r), px(1.8 * r));
+    case Marker::square:
+      return fmt::format("M{0} {1}h{2}v{2}h-{2}z", px(x - 0.9 * r), px(y - 0.9 * r), px(1.8 * r));
+    case Marker::diamond:
+      return fmt::format("M{0} {1}l{2} {2} -{2} {2} -{2} -{2}z", px(x), px(y - 1.2 * r), px(1.2 * r));
+    case Marker::triangle:
+      return fmt::format("M{} {}l{} {}h-{}z", px(x), px(y - 1.2 * r), px(1.1 * r), px(2.0 * r), px(2.2 * r));
+    case Marker::cross:
+      return fmt::format("M{0} {1}l{2} {2}m0-{2}l-{2} {2}", px(x - 0.9 * r), px(y - 0.9 * r), px(1.8 * r));
     case Marker::disc:
-    case Marker::ring: break;
+    case Marker::ring:
+      break;
   }
   return fmt::format("M{0} {1}a{2} {2} 0 1 0 {3} 0a{2} {2} 0 1 0-{3} 0", px(x - r), px(y), px(r), px(2.0 * r));
 }
@@ -134,8 +144,9 @@ std::string stroke(const char* colour, double width) {
 /// figures.
 std::string bar(double x, double y, double width, double height, Fill fill) {
   const char* colour = fill == Fill::solid ? kColours[0] : kColours[1];
-  std::string svg = fmt::format("<rect x=\"{}\" y=\"{}\" width=\"{}\" height=\"{}\" fill=\"{}\" stroke=\"{}\" stroke-width=\"1.5\"/>\n",
-                                px(x), px(y), px(width), px(height), fill == Fill::solid ? colour : "#fff", colour);
+  std::string svg = fmt::format(
+      "<rect x=\"{}\" y=\"{}\" width=\"{}\" height=\"{}\" fill=\"{}\" stroke=\"{}\" stroke-width=\"1.5\"/>\n", px(x),
+      px(y), px(width), px(height), fill == Fill::solid ? colour : "#fff", colour);
   if (fill == Fill::solid) return svg;
   std::string lines;
   constexpr double kPitch = 7.0;
@@ -158,14 +169,17 @@ std::vector<KeyEntry> key_of(const Figure& figure) {
   for (std::size_t i = 0; i < figure.points.size(); ++i) {
     const PointSeries& s = figure.points[i];
     const char* colour = kColours[i % kColours.size()];
-    const bool bars = std::any_of(s.points.begin(), s.points.end(), [](const FigurePoint& p) { return p.interval.has_value(); });
+    const bool bars =
+        std::any_of(s.points.begin(), s.points.end(), [](const FigurePoint& p) { return p.interval.has_value(); });
     key.push_back({s.name, [&s, colour, bars](double x, double y) {
                      const double middle = x + 13;
                      if (s.arrow != Arrow::none) {
-                       return path(arrow_path(s.arrow, middle, s.arrow == Arrow::down ? y - 7 : y + 7, 14), stroke(colour, 2));
+                       return path(arrow_path(s.arrow, middle, s.arrow == Arrow::down ? y - 7 : y + 7, 14),
+                                   stroke(colour, 2));
                      }
                      std::string svg;
-                     if (bars) svg = path(fmt::format("M{} {}v16m-4 0h8m-8-16h8", px(middle), px(y - 8)), stroke(colour, 1.5));
+                     if (bars)
+                       svg = path(fmt::format("M{} {}v16m-4 0h8m-8-16h8", px(middle), px(y - 8)), stroke(colour, 1.5));
                      return svg + path(marker_path(s.marker, middle, y, kMarkerRadius), marker_style(s.marker, colour));
                    }});
   }
@@ -179,8 +193,10 @@ std::vector<KeyEntry> key_of(const Figure& figure) {
   }
   for (const FigureBand& band : figure.bands) {
     key.push_back({band.name, [](double x, double y) {
-                     return fmt::format("<rect x=\"{}\" y=\"{}\" width=\"26\" height=\"12\" fill=\"{}\" stroke=\"{}\" stroke-dasharray=\"2 3\"/>\n",
-                                        px(x), px(y - 6), kBand, kSoft);
+                     return fmt::format(
+                         "<rect x=\"{}\" y=\"{}\" width=\"26\" height=\"12\" fill=\"{}\" stroke=\"{}\" "
+                         "stroke-dasharray=\"2 3\"/>\n",
+                         px(x), px(y - 6), kBand, kSoft);
                    }});
   }
   for (const BarSeries& s : figure.bars) {
@@ -215,11 +231,14 @@ std::string draw_bands_and_grid(const Figure& figure, const Area& area, const Ti
     const double top = area.inside_y(band.high), bottom = area.inside_y(band.low);
     svg += fmt::format("<rect x=\"{}\" y=\"{}\" width=\"{}\" height=\"{}\" fill=\"{}\"/>\n", px(area.left), px(top),
                        px(area.width), px(bottom - top), kBand);
-    edges += fmt::format("M{} {}H{}M{} {}H{}", px(area.left), px(top), px(area.right()), px(area.left), px(bottom), px(area.right()));
+    edges += fmt::format("M{} {}H{}M{} {}H{}", px(area.left), px(top), px(area.right()), px(area.left), px(bottom),
+                         px(area.right()));
   }
-  for (const double v : y_ticks.values) grid += fmt::format("M{} {}H{}", px(area.left), px(area.y(v)), px(area.right()));
+  for (const double v : y_ticks.values)
+    grid += fmt::format("M{} {}H{}", px(area.left), px(area.y(v)), px(area.right()));
   if (figure.points.empty()) {
-    for (const double v : x_ticks.values) grid += fmt::format("M{} {}V{}", px(area.x(v)), px(area.top), px(area.bottom()));
+    for (const double v : x_ticks.values)
+      grid += fmt::format("M{} {}V{}", px(area.x(v)), px(area.top), px(area.bottom()));
   }
   return svg + path(grid, stroke(kGrid, 1)) + path(edges, stroke(kSoft, 1) + " stroke-dasharray=\"2 3\"");
 }
@@ -236,7 +255,8 @@ std::string draw_series(const PointSeries& s, const char* colour, const Area& ar
       thin += fmt::format("M{} {}V{}", px(x), px(low), px(high));
       if (radius == kMarkerRadius) thin += fmt::format("M{} {}h8M{} {}h8", px(x - 4), px(low), px(x - 4), px(high));
     }
-    if (p.inner) thick += fmt::format("M{} {}V{}", px(x), px(area.inside_y(p.inner->low95)), px(area.inside_y(p.inner->high95)));
+    if (p.inner)
+      thick += fmt::format("M{} {}V{}", px(x), px(area.inside_y(p.inner->low95)), px(area.inside_y(p.inner->high95)));
     if (s.arrow != Arrow::none) {
       // An arrow stays within the picture; a bound near zero still shows its head.
       const double room = s.arrow == Arrow::down ? area.bottom() - y : y - area.top;
@@ -259,8 +279,11 @@ std::string figure_svg(const Figure& figure) {
   };
   constexpr double kLongestName = 250.0, kLongestTilted = 118.0;
   const bool named_y = !figure.y.names.empty();
-  const Ticks y_ticks = named_y ? Ticks{} : round_ticks(std::min(figure.y.low, figure.y.high), std::max(figure.y.low, figure.y.high), 6);
-  const Ticks x_ticks = figure.x.names.empty() ? round_ticks(std::min(figure.x.low, figure.x.high), std::max(figure.x.low, figure.x.high), 8) : Ticks{};
+  const Ticks y_ticks =
+      named_y ? Ticks{} : round_ticks(std::min(figure.y.low, figure.y.high), std::max(figure.y.low, figure.y.high), 6);
+  const Ticks x_ticks = figure.x.names.empty() ? round_ticks(std::min(figure.x.low, figure.x.high),
+                                                             std::max(figure.x.low, figure.x.high), 8)
+                                               : Ticks{};
 
   Area area{figure, 0.0, 0.0, 0.0, 0.0};
   area.left = named_y ? 22.0 + std::min(longest(figure.y.names), kLongestName) : 78.0;
@@ -270,14 +293,16 @@ std::string figure_svg(const Figure& figure) {
   const double per_name = area.width / std::max(1.0, static_cast<double>(figure.x.names.size()));
   const bool tilted = longest(figure.x.names) > per_name - 8.0;
   constexpr double kTilt = 50.0, kRadian = 3.14159265358979 / 180.0;
-  const double names_height = tilted ? 12.0 + std::min(longest(figure.x.names), kLongestTilted) * std::sin(kTilt * kRadian) : 20.0;
+  const double names_height =
+      tilted ? 12.0 + std::min(longest(figure.x.names), kLongestTilted) * std::sin(kTilt * kRadian) : 20.0;
   const double label_y = area.bottom() + names_height + 20.0;
 
   std::string body = draw_bands_and_grid(figure, area, x_ticks, y_ticks);
   std::string frame = fmt::format("M{} {}V{}H{}", px(area.left), px(area.top), px(area.bottom()), px(area.right()));
   for (const FigureLine& line : figure.lines) {
-    const std::string outline = line.vertical ? fmt::format("M{} {}V{}", px(area.x(line.at)), px(area.top), px(area.bottom()))
-                                              : fmt::format("M{} {}H{}", px(area.left), px(area.y(line.at)), px(area.right()));
+    const std::string outline = line.vertical
+                                    ? fmt::format("M{} {}V{}", px(area.x(line.at)), px(area.top), px(area.bottom()))
+                                    : fmt::format("M{} {}H{}", px(area.left), px(area.y(line.at)), px(area.right()));
     body += path(outline, stroke(kInk, 1.5) + (line.vertical && !line.name.empty() ? " stroke-dasharray=\"5 4\"" : ""));
   }
   for (const BarSeries& series : figure.bars) {
@@ -286,7 +311,8 @@ std::string figure_svg(const Figure& figure) {
       body += bar(from, area.y(b.y) - 11.0, to - from, 22.0, series.fill);
     }
   }
-  for (std::size_t i = 0; i < figure.points.size(); ++i) body += draw_series(figure.points[i], kColours[i % kColours.size()], area);
+  for (std::size_t i = 0; i < figure.points.size(); ++i)
+    body += draw_series(figure.points[i], kColours[i % kColours.size()], area);
   for (const FigureText& t : figure.texts) body += words(area.x(t.x) + 8.0, area.y(t.y) + 4.5, t.text, kTickSize);
 
   std::string ticks;
@@ -306,8 +332,11 @@ std::string figure_svg(const Figure& figure) {
     const double x = area.x(static_cast<double>(i));
     frame += fmt::format("M{} {}v5", px(x), px(area.bottom()));
     if (tilted) {
-      const std::string turn = fmt::format(" text-anchor=\"end\" transform=\"rotate(-{} {} {})\"", kTilt, px(x + 4), px(area.bottom() + 16));
-      ticks += words(x + 4, area.bottom() + 16, shortened(printable(figure.x.names[i]), fitting(kLongestTilted, kTickSize)), kTickSize, turn.c_str());
+      const std::string turn =
+          fmt::format(" text-anchor=\"end\" transform=\"rotate(-{} {} {})\"", kTilt, px(x + 4), px(area.bottom() + 16));
+      ticks +=
+          words(x + 4, area.bottom() + 16, shortened(printable(figure.x.names[i]), fitting(kLongestTilted, kTickSize)),
+                kTickSize, turn.c_str());
     } else {
       ticks += words(x, area.bottom() + 19.0, printable(figure.x.names[i]), kTickSize, kMiddle);
     }
@@ -322,7 +351,8 @@ std::string figure_svg(const Figure& figure) {
   }
   const double from = named_y ? 22.0 : area.left;
   const double room = kWidth - kRight - 22.0;
-  body += words(22.0, 24.0, shortened(printable(figure.title), fitting(room, kTitleSize)), kTitleSize, " font-weight=\"bold\"");
+  body += words(22.0, 24.0, shortened(printable(figure.title), fitting(room, kTitleSize)), kTitleSize,
+                " font-weight=\"bold\"");
   if (!figure.subtitle.empty()) {
     const std::string soft = fmt::format(" fill=\"{}\"", kSoft);
     body += words(22.0, 45.0, shortened(printable(figure.subtitle), fitting(room, kTextSize)), kTextSize, soft.c_str());

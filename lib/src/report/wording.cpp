@@ -1,10 +1,10 @@
 #include "report/wording.hpp"
 
+#include <fmt/format.h>
+
 #include <algorithm>
 #include <cmath>
 #include <map>
-
-#include <fmt/format.h>
 
 #include "pellicle/base/number.hpp"
 
@@ -38,6 +38,13 @@ bool unprintable(char32_t code) {
          (code >= 0x2066 && code <= 0x2069) || code == 0xFFFE || code == 0xFFFF;
 }
 
+/// Letters and signs that every font for European scripts has.
+bool common(char32_t code) {
+  static const std::u32string signs = U"€™Ω−∞≈≠≤≥";
+  return code < 0x500 || (code >= 0x1E00 && code <= 0x1EFF) || (code >= 0x2010 && code <= 0x203A) ||
+         (code >= 0x2070 && code <= 0x208E) || signs.find(code) != std::u32string::npos;
+}
+
 int decimals_for(double sd) {
   return sd > 0.0 ? std::clamp(1 - static_cast<int>(std::floor(std::log10(sd))), 0, 6) : 3;
 }
@@ -61,6 +68,21 @@ std::string printable(std::string_view text) {
   return result;
 }
 
+std::string european(std::string_view text) {
+  const std::string whole = printable(text);
+  std::string result;
+  for (std::size_t at = 0; at < whole.size();) {
+    const auto [code, length] = code_point(whole, at);
+    if (common(code)) {
+      result += whole.substr(at, length);
+    } else {
+      result += '?';
+    }
+    at += length;
+  }
+  return result;
+}
+
 std::size_t characters(std::string_view text) noexcept {
   return static_cast<std::size_t>(
       std::count_if(text.begin(), text.end(), [](char c) { return (static_cast<unsigned char>(c) & 0xC0U) != 0x80U; }));
@@ -79,12 +101,23 @@ std::string escaped(std::string_view text) {
   std::string result;
   for (const char c : printable(text)) {
     switch (c) {
-      case '&': result += "&amp;"; break;
-      case '<': result += "&lt;"; break;
-      case '>': result += "&gt;"; break;
-      case '"': result += "&quot;"; break;
-      case '\'': result += "&#39;"; break;
-      default: result += c;
+      case '&':
+        result += "&amp;";
+        break;
+      case '<':
+        result += "&lt;";
+        break;
+      case '>':
+        result += "&gt;";
+        break;
+      case '"':
+        result += "&quot;";
+        break;
+      case '\'':
+        result += "&#39;";
+        break;
+      default:
+        result += c;
     }
   }
   return result;
@@ -94,6 +127,13 @@ std::string value_words(double value, double sd) { return fmt::format("{:.{}f}",
 
 std::string interval_words(const Interval& interval, double sd) {
   return value_words(interval.low95, sd) + " to " + value_words(interval.high95, sd);
+}
+
+std::string angle_words(double degrees) {
+  std::string text = fmt::format("{:.2f}", degrees);
+  text.erase(text.find_last_not_of('0') + 1);
+  if (text.ends_with('.')) text.pop_back();
+  return text == "-0" ? "0" : text;
 }
 
 std::string input_words(std::string_view name) {
@@ -121,7 +161,8 @@ std::string route_words(const Run& run, const ThicknessRoute& route) {
   if (route.layer.empty()) return run.sample.substrate.id;
   const std::string& material = run.sample.material(route.layer).id;
   const std::string film = material == route.layer ? route.layer : route.layer + " (" + material + ")";
-  return film + " on " + run.sample.substrate.id;
+  const std::size_t below = run.sample.position(route.layer) + 1;
+  return film + " on " + (below < run.sample.layers.size() ? run.sample.layers[below].name : run.sample.substrate.id);
 }
 
 std::string lines_words(const Run& run, const ThicknessRoute& route) {

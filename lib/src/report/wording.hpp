@@ -20,6 +20,9 @@ namespace pellicle::detail {
 /// At most `most` characters; an ellipsis stands for the rest.
 [[nodiscard]] std::string shortened(std::string_view text, std::size_t most);
 
+/// Printable text in which characters that a font for European scripts may lack are question marks.
+[[nodiscard]] std::string european(std::string_view text);
+
 /// Printable text with <, >, &, " and ' written as entities, for HTML and XML.
 [[nodiscard]] std::string escaped(std::string_view text);
 
@@ -29,10 +32,13 @@ namespace pellicle::detail {
 /// Value to the digits that its standard uncertainty leaves: "3.37".
 [[nodiscard]] std::string value_words(double value, double sd);
 
+/// "34.5" for an angle in degrees, to a hundredth.
+[[nodiscard]] std::string angle_words(double degrees);
+
 /// "attenuation length" for length_nm: an input of the budget for people.
 [[nodiscard]] std::string input_words(std::string_view name);
 
-/// "oxide on Al".
+/// "oxide on Al": the layer of a route and what lies below it.
 [[nodiscard]] std::string route_words(const Run& run, const ThicknessRoute& route);
 
 /// "Al 2p oxide over Al 2p metal", the lines a route uses.

@@ -13,6 +13,8 @@ namespace pellicle {
 
 [[nodiscard]] std::string lengths_json(const std::vector<LengthQuery>& queries);
 [[nodiscard]] std::string thickness_json(const Run& run, const ThicknessResults& results);
+/// SHA-256 of the inputs of a run, as thickness_json() states it.
+[[nodiscard]] std::string inputs_sha256(const Run& run);
 [[nodiscard]] std::string materials_json(const std::vector<Material>& materials);
 /// @param source nothing: kinetic energies, cross sections and asymmetries are null
 [[nodiscard]] std::string lines_json(const std::vector<CoreLevel>& levels, const PhotonSource* source);

@@ -116,7 +116,8 @@ enum class PlotFormat { svg, png, pdf, terminal };
 [[nodiscard]] std::optional<PlotFormat> plot_format(std::string_view path);
 
 /// A script for `gnuplot --default-settings` that sends the picture to its standard output. It names no file, because
-/// gnuplot takes some names for commands; no text of the figure can end its quotes.
+/// gnuplot takes some names for commands; no text of the figure can end its quotes. PNG and PDF show scripts beyond the
+/// European ones as question marks, SVG shows all.
 /// @param columns, rows size of the terminal, for PlotFormat::terminal
 [[nodiscard]] std::string gnuplot_script(const Figure& figure, PlotFormat format, int columns = 79, int rows = 24);
 

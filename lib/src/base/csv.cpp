@@ -52,8 +52,10 @@ void read_csv(std::string_view text, const std::string& place, const std::functi
   std::size_t line = 0;
   std::size_t first_line = 1;
   // Errors must not cross the C library, so rows are handed on between calls, one line per call.
+  bool in_row = false;
   const auto hand_on = [&] {
     if (!row.complete) return;
+    in_row = false;
     const bool blank = row.count == 1 && row.fields[0].empty();
     if (!blank) on_row({first_line, std::span(row.fields.data(), row.count)});
     row.count = 0;
@@ -64,7 +66,10 @@ void read_csv(std::string_view text, const std::string& place, const std::functi
     const std::size_t newline = text.find('\n', begin);
     const std::size_t size = (newline == std::string_view::npos ? text.size() : newline + 1) - begin;
     ++line;
-    if (row.count == 0) first_line = line;
+    if (!in_row) {
+      first_line = line;
+      in_row = text.substr(begin, size).find_first_not_of(" \t\r\n") != std::string_view::npos;
+    }
     if (csv_parse(&parser, text.data() + begin, size, on_field, on_row_end, &row) != size) throw_quote_error(place, line);
     hand_on();
     begin += size;

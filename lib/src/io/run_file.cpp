@@ -40,13 +40,13 @@ Material read_material(TomlSection& section, std::string_view key) {
   }
   if (!node->is_table()) throw InputError(where, "this is not a material", "expected text or { formula = …, density_g_cm3 = … }");
   TomlSection table(*node->as_table(), section.file(), std::string(key));
+  table.allow({"formula", "id", "density_g_cm3", "band_gap_ev", "valence_electrons"});
   const std::optional<std::string> formula = table.text("formula");
   const std::optional<std::string> id = table.text("id");
   MaterialOverrides overrides;
   overrides.density_g_cm3 = table.number("density_g_cm3");
   overrides.band_gap_ev = table.number("band_gap_ev");
   overrides.valence_electrons = table.number("valence_electrons");
-  table.finish();
   if (formula.has_value() == id.has_value()) {
     throw InputError(where, formula ? "both formula and id are given" : "neither formula nor id is given",
                      "give formula with density_g_cm3, or the id of a catalogued material");
@@ -57,6 +57,8 @@ Material read_material(TomlSection& section, std::string_view key) {
 void read_instrument(TomlSection& root, Run& run) {
   auto section = root.section("instrument");
   if (!section) throw InputError(run.place, "the table [instrument] is missing", "expected [instrument] with source = \"Al Ka\"");
+  section->allow({"source", "photon_energy_ev", "emission_deg", "takeoff_deg", "emission_sd_deg", "source_analyser_angle_deg",
+                  "acceptance_half_angle_deg", "signal_area", "tilt_direction", "emission_at_zero_tilt_deg"});
   const auto source = section->text("source");
   const auto energy = section->number("photon_energy_ev");
   if (source.has_value() == energy.has_value()) {
@@ -95,15 +97,16 @@ void read_instrument(TomlSection& root, Run& run) {
   if (run.emission_sd_deg && !(*run.emission_sd_deg >= 0.0)) {
     throw InputError(section->where("emission_sd_deg"), "the standard uncertainty is negative", "expected a number >= 0");
   }
-  section->finish();
 }
 
 void read_sample(TomlSection& root, Run& run) {
   auto section = root.section("sample");
   if (!section) throw InputError(run.place, "the table [sample] is missing", "expected [sample] with substrate and [[sample.layer]]");
+  section->allow({"substrate", "layer"});
   run.sample.substrate = read_material(*section, "substrate");
   std::set<std::string> names;
   for (TomlSection& entry : section->sections("layer")) {
+    entry.allow({"name", "material", "thickness_nm"});
     Layer layer{entry.required_text("name"), read_material(entry, "material")};
     layer.thickness_nm = entry.quantity("thickness_nm");
     if (layer.thickness_nm && !(layer.thickness_nm->value >= 0.0)) {
@@ -111,10 +114,8 @@ void read_sample(TomlSection& root, Run& run) {
     }
     if (layer.name == kSubstrate) throw InputError(entry.where("name"), "a layer cannot be called \"substrate\"");
     if (!names.insert(layer.name).second) throw InputError(entry.where("name"), "two layers are called \"" + layer.name + "\"");
-    entry.finish();
     run.sample.layers.push_back(std::move(layer));
   }
-  section->finish();
 }
 
 void read_lengths(TomlSection& entry, const Run& run, Line& line) {
@@ -144,9 +145,9 @@ void read_components(TomlSection& entry, Line& line) {
       component.label = *label;
     } else if (item.is_table()) {
       TomlSection table(*item.as_table(), entry.file(), "components");
+      table.allow({"label", "weight"});
       component.label = table.required_text("label");
       component.weight = table.number("weight").value_or(1.0);
-      table.finish();
       if (!(component.weight > 0.0)) throw InputError(where, "a weight is not a number > 0");
     } else {
       throw InputError(where, "a component is neither text nor a table", "expected \"label\" or { label = …, weight = … }");
@@ -187,6 +188,8 @@ void read_reference_area(TomlSection& entry, Line& line) {
 }
 
 Line read_line(TomlSection& entry, const Run& run) {
+  entry.allow({"label", "level", "kinetic_energy_ev", "binding_energy_ev", "from", "components", "reference_area",
+               "main_peak_fraction", "sensitivity", "transmission", "length_nm"});
   Line line;
   line.label = entry.required_text("label");
   const auto level = entry.text("level");
@@ -219,7 +222,6 @@ Line read_line(TomlSection& entry, const Run& run) {
   line.sensitivity = positive_quantity(entry, "sensitivity");
   line.transmission = positive_quantity(entry, "transmission");
   read_lengths(entry, run, line);
-  entry.finish();
   return line;
 }
 
@@ -255,6 +257,7 @@ void read_ratio(TomlSection& entry, ReferenceRatio& reference) {
 
 void read_references(TomlSection& root, Run& run) {
   for (TomlSection& entry : root.sections("reference")) {
+    entry.allow({"film", "substrate", "ratio"});
     ReferenceRatio reference;
     reference.film = entry.required_text("film");
     reference.substrate = entry.required_text("substrate");
@@ -265,7 +268,6 @@ void read_references(TomlSection& root, Run& run) {
       throw InputError(entry.where(key), "no line is labelled \"" + *label + "\"", detail::name_hint(*label, labels));
     }
     read_ratio(entry, reference);
-    entry.finish();
     run.references.push_back(std::move(reference));
   }
 }
@@ -273,19 +275,20 @@ void read_references(TomlSection& root, Run& run) {
 void read_contamination(TomlSection& root, Run& run) {
   auto section = root.section("contamination");
   if (!section) return;
+  section->allow({"layer", "line", "route"});
   Contamination c;
   c.layer = section->required_text("layer");
   located(section->where("layer"), [&] { return run.sample.position(c.layer); });
   c.line = section->required_text("line");
   if (!run.find_line(c.line)) throw InputError(section->where("line"), "no line is labelled \"" + c.line + "\"");
   c.route = located(section->where("route"), [&] { return contamination_route(section->required_text("route")); });
-  section->finish();
   run.contamination = std::move(c);
 }
 
 void read_thickness_options(TomlSection& root, Run& run) {
   auto section = root.section("thickness");
   if (!section) return;
+  section->allow({"method", "interval", "draws", "seed", "length_given_for_angle"});
   if (const auto method = section->text("method")) {
     const std::vector<std::string> names = {"ratio", "substrate-line", "film-line"};
     if (*method == names[0]) run.method = ThicknessMethod::ratio;
@@ -308,7 +311,6 @@ void read_thickness_options(TomlSection& root, Run& run) {
     run.uncertainty.seed = static_cast<std::uint64_t>(*seed);
   }
   run.length_given_for_angle = section->flag("length_given_for_angle").value_or(false);
-  section->finish();
 }
 
 void read_sensitivity_options(TomlSection& root, Run& run) {
@@ -328,6 +330,7 @@ void read_sensitivity_options(TomlSection& root, Run& run) {
 
 void read_correlations(TomlSection& section, const std::vector<std::string>& labels, Run& run) {
   for (TomlSection& entry : section.sections("correlation")) {
+    entry.allow({"lines", "r"});
     const toml::node* lines = entry.node("lines");
     const std::string where = entry.where("lines");
     AreaCorrelation c;
@@ -340,7 +343,6 @@ void read_correlations(TomlSection& section, const std::vector<std::string>& lab
     }
     const auto r = entry.number("r");
     if (!r || !(std::abs(*r) <= 1.0)) throw InputError(entry.where("r"), r ? "the correlation lies outside [-1, 1]" : "this key is missing", "expected r = -0.4");
-    entry.finish();
     run.area_correlations.push_back({*first, *second, *r});
   }
 }
@@ -348,6 +350,7 @@ void read_correlations(TomlSection& section, const std::vector<std::string>& lab
 void read_data(TomlSection& root, const std::vector<std::string>& tables, Run& run) {
   auto section = root.section("data");
   if (!section) throw InputError(run.place, "the table [data] is missing", "expected [data] with areas = \"table.csv\"");
+  section->allow({"areas", "area_unit", "transmission", "layout", "columns", "correlation"});
   if (const auto unit = section->text("area_unit")) {
     run.area_unit = located(section->where("area_unit"), [&] { return area_unit(*unit); });
   }
@@ -379,7 +382,6 @@ void read_data(TomlSection& root, const std::vector<std::string>& tables, Run& r
     (void)section->text("areas");
     run.tables = tables;
   }
-  section->finish();
   for (std::size_t i = 0; i < run.tables.size(); ++i) {
     options.table = i;
     std::vector<AreaRow> rows = read_area_table(read_text_file(run.tables[i]), run.tables[i], options);
@@ -394,17 +396,15 @@ Run parse_run(std::string_view text, const std::string& place, const std::vector
   run.place = place;
   const toml::table table = detail::parse_toml(text, place);
   TomlSection root(table, place, "");
+  root.allow({"title", "record", "instrument", "sample", "line", "reference", "contamination", "thickness", "data", "length_set",
+              "sensitivity_kind", "sensitivity_includes"});
   run.title = root.text("title").value_or("");
   if (auto record = root.section("record")) {
+    record->allow(record_keys());
     for (const std::string& key : record_keys()) {
       if (auto value = record->echo(key)) run.record.emplace_back(key, *value);
     }
-    record->finish();
   }
-  // Every top-level key is known before any is judged, so that a misspelt table is not reported as missing.
-  for (const char* key : {"instrument", "sample", "line", "reference", "contamination", "thickness", "data", "length_set", "sensitivity_kind",
-                          "sensitivity_includes"}) (void)root.node(key);
-  root.finish();
   read_instrument(root, run);
   read_sample(root, run);
   run.length_set = root.text("length_set").value_or("");

@@ -1,6 +1,9 @@
 #include "io/toml_section.hpp"
 
+#include <algorithm>
 #include <cmath>
+#include <stdexcept>
+#include <utility>
 
 #include "base/nearest.hpp"
 #include "pellicle/base/error.hpp"
@@ -50,10 +53,10 @@ Quantity read_quantity(const toml::node& node, const std::string& file, const st
     return finite_number(node, where);
   }
   TomlSection table(*node.as_table(), file, "");
+  table.allow({"value", "sd", "relative_sd"});
   const std::optional<double> value = table.number("value");
   const std::optional<double> sd = table.number("sd");
   const std::optional<double> relative = table.number("relative_sd");
-  table.finish();
   if (!value) throw InputError(where, "value is missing", "expected { value = …, sd = … }");
   if (sd && relative) throw InputError(where, "both sd and relative_sd are given", "keep one");
   Quantity quantity = *value;
@@ -68,6 +71,16 @@ Quantity read_quantity(const toml::node& node, const std::string& file, const st
 TomlSection::TomlSection(const toml::table& table, std::string file, std::string path)
     : table_(table), file_(std::move(file)), path_(std::move(path)) {}
 
+void TomlSection::allow(std::vector<std::string> keys) {
+  allowed_ = std::move(keys);
+  for (const auto& [key, value] : table_) {
+    const std::string_view name = key.str();
+    if (std::find(allowed_.begin(), allowed_.end(), name) != allowed_.end()) continue;
+    throw InputError(at(file_, key.source().begin) + ": " + dotted(name), "unknown key \"" + std::string(name) + "\"",
+                     name_hint(name, allowed_));
+  }
+}
+
 std::string TomlSection::dotted(std::string_view key) const {
   return path_.empty() ? std::string(key) : path_ + "." + std::string(key);
 }
@@ -77,8 +90,10 @@ std::string TomlSection::where(std::string_view key) const {
   return at(file_, node ? node->source().begin : table_.source().begin) + ": " + dotted(key);
 }
 
-const toml::node* TomlSection::find(std::string_view key) {
-  known_.emplace_back(key);
+const toml::node* TomlSection::find(std::string_view key) const {
+  if (!allowed_.empty() && std::find(allowed_.begin(), allowed_.end(), key) == allowed_.end()) {
+    throw std::logic_error(dotted(key) + " is read but not allowed");
+  }
   return table_.get(key);
 }
 
@@ -158,17 +173,6 @@ std::optional<std::string> TomlSection::echo(std::string_view key) {
     return std::to_string(day.year) + "-" + two(day.month) + "-" + two(day.day);
   }
   throw InputError(where(key), "this is " + kind_of(*node), "expected text or a number");
-}
-
-void TomlSection::finish() const {
-  for (const auto& [key, value] : table_) {
-    const std::string_view name = key.str();
-    bool known = false;
-    for (const std::string& k : known_) known = known || k == name;
-    if (known) continue;
-    throw InputError(at(file_, key.source().begin) + ": " + dotted(name), "unknown key \"" + std::string(name) + "\"",
-                     name_hint(name, known_));
-  }
 }
 
 }  // namespace pellicle::detail

@@ -12,13 +12,16 @@
 
 namespace pellicle::detail {
 
-/// A table of a run file. Call every accessor the section knows, then finish(), which refuses the rest.
+/// A table of a run file. allow() comes first, so that a misspelt key is called unknown before another is missed.
 class TomlSection {
  public:
   /// @param path dotted name of the table, for messages; empty for the root
   TomlSection(const toml::table& table, std::string file, std::string path);
 
-  [[nodiscard]] bool has(std::string_view key) const { return table_.contains(key); }
+  /// Names the keys of this table.
+  /// @throws InputError for any other that stands in it, with the nearest known key
+  void allow(std::vector<std::string> keys);
+
   std::optional<std::string> text(std::string_view key);
   std::string required_text(std::string_view key);
   std::optional<double> number(std::string_view key);
@@ -29,25 +32,22 @@ class TomlSection {
   std::vector<TomlSection> sections(std::string_view key);
   /// Text or number as text; for entries that are only echoed.
   std::optional<std::string> echo(std::string_view key);
-  /// The value as it stands, for keys with several shapes. Counts as known.
+  /// The value as it stands, for keys with several shapes.
   const toml::node* node(std::string_view key);
   /// Keys of this table, in the order of the file.
   [[nodiscard]] std::vector<std::string> keys() const;
-
-  /// @throws InputError for a key that no accessor has asked for, with the nearest known key.
-  void finish() const;
 
   /// "file:line:column: path.key"
   [[nodiscard]] std::string where(std::string_view key) const;
   [[nodiscard]] const std::string& file() const { return file_; }
 
  private:
-  const toml::node* find(std::string_view key);
+  [[nodiscard]] const toml::node* find(std::string_view key) const;
   [[nodiscard]] std::string dotted(std::string_view key) const;
 
   const toml::table& table_;
   std::string file_, path_;
-  std::vector<std::string> known_;
+  std::vector<std::string> allowed_;  ///< empty: any key
 };
 
 /// Parses TOML text. @throws InputError with file, line and column.

@@ -15,6 +15,7 @@
 #include <span>
 #include <vector>
 
+#include "base/instruction_set.hpp"
 #include "base/random_kernel.hpp"
 #include "pellicle/base/random.hpp"
 
@@ -213,8 +214,7 @@ void fill(Fill<Element> kernel, std::uint64_t seed, std::uint64_t block, std::ui
 std::span<const RandomKernel> random_kernels() {
   static const std::vector<RandomKernel> all = [] {
     std::vector<RandomKernel> kernels;
-    const std::int64_t can_run = hwy::SupportedTargets();
-    (void)can_run;
+    [[maybe_unused]] const std::int64_t can_run = runnable_targets();
 #define ADD(target, set)                                                                                      \
   if ((can_run & (target)) != 0) {                                                                            \
     kernels.push_back({hwy::TargetName(target), set::FillBits, set::FillUniform, set::FillNormal});           \

@@ -4,13 +4,14 @@
 #include "pellicle/estimate/thickness.hpp"
 
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <limits>
 #include <string>
 
 #include <boost/math/tools/toms748_solve.hpp>
 
-#include "estimate/overlayer_root.hpp"
+#include "estimate/overlayer_kernel.hpp"
 #include "pellicle/base/constants.hpp"
 #include "pellicle/base/error.hpp"
 #include "pellicle/base/number.hpp"
@@ -58,7 +59,7 @@ std::optional<Reduced> solve_reduced(ThicknessMethod method, double r, double rh
   switch (method) {
     case ThicknessMethod::ratio: {
       if (!(r > 0.0)) return Reduced{};
-      const detail::RootResult root = detail::overlayer_root(r, rho);
+      const detail::RootResult root = detail::overlayer_root_as_in_arrays(r, rho);
       if (root.status != Status::ok) return std::nullopt;
       const double inverse_slope = root.x > 0.0 ? 1.0 / (rho + 1.0 / std::expm1(root.x)) : 0.0;
       return Reduced{root.x, inverse_slope, -root.x * inverse_slope};
@@ -90,7 +91,7 @@ void apply(double& r, double value, double power) {
   if (power == 1.0) {
     r *= value;
   } else if (power == -1.0) {
-    r /= value;
+    r = detail::reduced_ratio(r, value);
   } else {
     r *= std::pow(value, power);
   }
@@ -247,6 +248,9 @@ Thickness thickness_from_factors(const FilmMeasurement& m) {
   result.reduced_thickness = p.x;
   result.budget = combine(p.inputs, positions(m, p.inputs));
   result.standard_uncertainty_nm = result.budget.standard_uncertainty;
+  if (!std::isfinite(p.t) || !std::isfinite(result.standard_uncertainty_nm)) {
+    throw DomainError("thickness_nm", "it or its uncertainty is too large for a number", "check the sizes of areas and lengths");
+  }
   result.scale_stated = m.film_line_length_nm.standard_uncertainty &&
                         (!m.substrate_line_length_nm || m.substrate_line_length_nm->standard_uncertainty);
   result.interval_nm = normal_interval(p.t, result.standard_uncertainty_nm);
@@ -347,30 +351,48 @@ void thickness_nm(const RatioArrays& in, std::span<double> out, std::span<Status
   if (!equal_lengths) check_size("substrate_line_length_nm", in.substrate_line_length_nm);
   check_size("emission_deg", in.emission_deg);
 
-  const auto at = [](std::span<const double> values, std::size_t i) { return values.size() == 1 ? values[0] : values[i]; };
+  const detail::OverlayerKernel kernel = detail::overlayer_kernel().solve;
+  const auto column = [](std::span<const double> values) {
+    return detail::KernelColumn{values.data(), values.size() == 1 ? std::size_t{0} : std::size_t{1}};
+  };
+  const detail::KernelColumn ratio = column(in.ratio), reference = column(in.reference_ratio);
+  const detail::KernelColumn film_length = column(in.film_line_length_nm), emission = column(in.emission_deg);
+  const detail::KernelColumn substrate_length = equal_lengths ? film_length : column(in.substrate_line_length_nm);
   const auto positive = [](double v) { return v > 0.0 && std::isfinite(v); };
+  // L_f cosθ; NaN, which the kernel leaves to us, where one of them is not legal.
+  const auto unit_of = [&](double length, double angle) {
+    const bool legal = positive(length) && angle >= 0.0 && angle < 90.0;
+    return legal ? length * std::cos(angle * kRadianPerDegree) : std::numeric_limits<double>::quiet_NaN();
+  };
+  const bool one_unit = film_length.step == 0 && emission.step == 0;
   for_each_block(size, [&](std::size_t begin, std::size_t end) {
+    std::array<double, kBlockSize> units;
+    units[0] = unit_of(film_length[begin], emission[begin]);
+    if (!one_unit) {
+      // Neighbours mostly share their angle; its cosine is then known.
+      double angle = emission[begin], cosine = unit_of(1.0, angle);
+      for (std::size_t i = begin; i < end; ++i) {
+        if (emission[i] != angle) cosine = unit_of(1.0, angle = emission[i]);
+        units[i - begin] = positive(film_length[i]) ? film_length[i] * cosine : std::numeric_limits<double>::quiet_NaN();
+      }
+    }
+    const auto here = [&](const detail::KernelColumn& c) { return detail::KernelColumn{c.values + begin * c.step, c.step}; };
+    const detail::KernelColumn unit{units.data(), one_unit ? std::size_t{0} : std::size_t{1}};
+    const detail::KernelInput input{here(ratio), here(reference), here(film_length), here(substrate_length), unit, equal_lengths};
+    if (kernel(input, end - begin, &out[begin], &status[begin]) == 0) return;
     for (std::size_t i = begin; i < end; ++i) {
-      const double ratio = at(in.ratio, i);
-      const double reference = at(in.reference_ratio, i);
-      const double film_length = at(in.film_line_length_nm, i);
-      const double substrate_length = equal_lengths ? film_length : at(in.substrate_line_length_nm, i);
-      const double emission = at(in.emission_deg, i);
+      if (status[i] == Status::ok) continue;
+      const double unit_nm = unit[i - begin];
       out[i] = std::numeric_limits<double>::quiet_NaN();
-      if (!(ratio >= 0.0) || !positive(reference) || !positive(film_length) || !positive(substrate_length) ||
-          !(emission >= 0.0 && emission < 90.0)) {
+      if (!(ratio[i] >= 0.0) || !positive(reference[i]) || !positive(substrate_length[i]) || std::isnan(unit_nm)) {
         status[i] = Status::invalid_input;
         continue;
       }
-      const double reduced = ratio / reference;
-      if (!std::isfinite(reduced)) {
-        status[i] = Status::no_solution;
-        continue;
-      }
-      detail::RootResult root{0.0, Status::ok};
-      if (reduced > 0.0) root = detail::overlayer_root(reduced, film_length / substrate_length);
-      status[i] = root.status;
-      if (root.status == Status::ok) out[i] = root.x * film_length * std::cos(emission * kRadianPerDegree);
+      const double rho = equal_lengths ? 1.0 : film_length[i] / substrate_length[i];
+      const detail::RootResult root = detail::overlayer_root_as_in_arrays(detail::reduced_ratio(ratio[i], reference[i]), rho);
+      const double thickness = root.x * unit_nm;
+      status[i] = root.status == Status::ok && !std::isfinite(thickness) ? Status::no_solution : root.status;
+      if (status[i] == Status::ok) out[i] = thickness;
     }
   });
 }

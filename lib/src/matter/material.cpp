@@ -54,7 +54,7 @@ bool Material::is_organic() const noexcept {
 
 Material make_material(std::string_view formula, double density_g_cm3, std::optional<double> band_gap_ev,
                        std::optional<double> valence_electrons) {
-  check_range("density_g_cm3", density_g_cm3, 0.0, false, 30.0);
+  check_range("density_g_cm3", density_g_cm3, 1e-4, true, 30.0);
   if (band_gap_ev) check_range("band_gap_ev", *band_gap_ev, 0.0, true, 30.0);
   if (valence_electrons) check_range("valence_electrons", *valence_electrons, 0.0, false, 1e9);
   Material m;

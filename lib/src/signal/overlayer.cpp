@@ -23,7 +23,8 @@ double reduced_thickness(double thickness_nm, double length_nm, double emission_
   }
   require_positive("length_nm", length_nm);
   check_emission_deg(emission_deg);
-  return thickness_nm / (length_nm * std::cos(emission_deg * kRadianPerDegree));
+  // No film is no film, even where the smallest length times a grazing cosine is no number any more.
+  return thickness_nm == 0.0 ? 0.0 : thickness_nm / (length_nm * std::cos(emission_deg * kRadianPerDegree));
 }
 
 }  // namespace

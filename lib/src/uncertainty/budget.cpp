@@ -52,7 +52,8 @@ Budget combine(const std::vector<UncertainInput>& inputs, const std::vector<Corr
   check(inputs, correlations);
   std::vector<double> parts(inputs.size());
   std::transform(inputs.begin(), inputs.end(), parts.begin(),
-                 [](const UncertainInput& i) { return i.sensitivity * i.standard_uncertainty; });
+                 // What has no uncertainty adds none, even where its derivative is too large for a number.
+                 [](const UncertainInput& i) { return i.standard_uncertainty == 0.0 ? 0.0 : i.sensitivity * i.standard_uncertainty; });
 
   const double total = variance(inputs, parts, correlations, true, {});
   Budget budget;

@@ -2,7 +2,8 @@
 /// Film thickness from the ratio of the film's line to the substrate's line.
 ///
 ///   R / R₀ = [1 − exp(−x)] exp(ϱ x),  x = t/(L_f cosθ),  ϱ = L_f/L_s                    (forward model:
-///   t = L cosθ ln(1 + R/R₀)                 when L_f = L_s = L (same line)     signal/overlayer.hpp) [hill1976]
+///   t = L cosθ ln(1 + R/R₀)                 when L_f = L_s = L (same line)     signal/overlayer.hpp) [hill1976]; as used
+///                                                                          for oxides in [seah2002]
 ///
 /// The left side rises strictly from 0 to ∞, so every R > 0 has exactly one thickness. Numerical error:
 /// at most 1e-13 relative for x from 1e-6 to 50 and ϱ from 0.2 to 5. Model error: that of the flat,

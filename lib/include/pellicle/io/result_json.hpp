@@ -11,10 +11,13 @@
 
 namespace pellicle {
 
+/// Lengths [nm], every model beside the chosen one.
 [[nodiscard]] std::string lengths_json(const std::vector<LengthQuery>& queries);
+/// Thicknesses [nm] with uncertainty, budget, findings and summary.
 [[nodiscard]] std::string thickness_json(const Run& run, const ThicknessResults& results);
 /// SHA-256 of the inputs of a run, as thickness_json() states it.
 [[nodiscard]] std::string inputs_sha256(const Run& run);
+/// Catalogue rows with the source of every number.
 [[nodiscard]] std::string materials_json(const std::vector<Material>& materials);
 /// @param source nothing: kinetic energies, cross sections and asymmetries are null
 [[nodiscard]] std::string lines_json(const std::vector<CoreLevel>& levels, const PhotonSource* source);

@@ -24,7 +24,9 @@ class Formula {
   /// @throws InputError with the 1-based character position of the fault.
   static Formula parse(std::string_view text);
 
+  /// As it was written.
   [[nodiscard]] const std::string& text() const noexcept { return text_; }
+  /// Elements and their counts per formula unit, in the order of first appearance.
   [[nodiscard]] std::span<const FormulaTerm> terms() const noexcept { return terms_; }
 
   /// Molar mass of a formula unit [g/mol].

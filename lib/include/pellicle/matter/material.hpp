@@ -30,7 +30,7 @@ struct Material {
 
 /// A material defined by its numbers.
 /// @param formula             see Formula::parse
-/// @param density_g_cm3       > 0 and <= 30 [g/cm³]
+/// @param density_g_cm3       0.0001 to 30 [g/cm³]; the lightest aerogels have 0.0002
 /// @param band_gap_ev         >= 0 and <= 30 [eV]; nothing when not known
 /// @param valence_electrons   > 0, per formula unit; nothing: summed from the elements
 /// @throws InputError naming the field that is out of range
@@ -69,6 +69,7 @@ struct MaterialOverrides {
   std::optional<double> density_g_cm3;      ///< [g/cm³]
   std::optional<double> band_gap_ev;        ///< [eV]
   std::optional<double> valence_electrons;  ///< per formula unit
+  /// True when any of them is given.
   [[nodiscard]] bool any() const noexcept { return density_g_cm3 || band_gap_ev || valence_electrons; }
 };
 

@@ -20,9 +20,11 @@ namespace pellicle {
 enum class SignalArea { analyser, x_ray_spot };
 enum class TiltDirection { toward_source, away_from_source, across };
 
+/// As a run file names it.
 [[nodiscard]] const char* signal_area_name(SignalArea area) noexcept;
 /// @throws InputError with the known names.
 [[nodiscard]] SignalArea signal_area(std::string_view name);
+/// As a run file names it.
 [[nodiscard]] const char* tilt_direction_name(TiltDirection direction) noexcept;
 /// @throws InputError with the known names.
 [[nodiscard]] TiltDirection tilt_direction(std::string_view name);

@@ -23,7 +23,9 @@ namespace pellicle {
 
 enum class AttenuationModel { seah_gilmore, s3, cs2, organic, seah_dench };
 
+/// Name, source and range [eV] of a model.
 [[nodiscard]] const ModelInfo& model_info(AttenuationModel model);
+/// All models, in the order they are shown.
 [[nodiscard]] std::span<const AttenuationModel> attenuation_models();
 /// Model by name, letter case ignored. @throws InputError with the known names.
 [[nodiscard]] AttenuationModel attenuation_model(std::string_view name);

@@ -41,7 +41,9 @@ struct ModelValue {
   Findings findings;
 };
 
+/// Name, source and range [eV] of a model.
 [[nodiscard]] const ModelInfo& model_info(ImfpModel model);
+/// All models, in the order they are shown.
 [[nodiscard]] std::span<const ImfpModel> imfp_models();
 /// Model by name, letter case ignored. @throws InputError with the known names.
 [[nodiscard]] ImfpModel imfp_model(std::string_view name);

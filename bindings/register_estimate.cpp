@@ -19,7 +19,7 @@ py::object thickness_arrays(const DoubleArray& ratio, const DoubleArray& referen
   }
   if (want_status) return py::make_tuple(values, codes);
   raise_for_status("thickness_nm", status);
-  return std::move(values);
+  return values;
 }
 
 }  // namespace

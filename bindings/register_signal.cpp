@@ -11,7 +11,7 @@ void register_signal(py::module_& m) {
           for (py::ssize_t i = 0; i < thickness.size(); ++i) {
             out.mutable_data()[i] = ratio_of_film(thickness.data()[i], reference_ratio, film_length, substrate, emission);
           }
-          return std::move(out);
+          return out;
         },
         "thickness_nm"_a, py::kw_only(), "reference_ratio"_a, "film_line_length_nm"_a, "substrate_line_length_nm"_a = py::none(), "emission_deg"_a = 0.0,
         R"(Ratio of film area to substrate area of a flat, uniform film: the forward model of thickness_nm().

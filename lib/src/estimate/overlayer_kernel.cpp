@@ -70,7 +70,7 @@ HWY_INLINE VF Quartic(VF t, float c0, float c1, float c2, float c3, float c4) {
 }
 
 /// Coefficients of the guess x0 = v (1 + n1 v + ... + n4 v^4)/(1 + d1 v + ... + d4 v^4), v = ln(1 + r), as functions
-/// of (rho - 1)/(rho + 1). Minimax fit by linear programming, tests/bench/overlayer_guess.py: |F/T| below StepTerms'
+/// of (rho - 1)/(rho + 1). Minimax fit by linear programming, reference/fit_overlayer_guess.py: |F/T| below StepTerms'
 /// limit for rho from 0.35 to 3, growing to six times that at 0.2 and 5. All of them are positive there.
 struct GuessTerms {
   VF n1, n2, n3, n4, d1, d2, d3, d4;
@@ -79,14 +79,14 @@ struct GuessTerms {
     const DF df;
     const VF p = hn::DemoteTo(df, rho), one = hn::Set(df, 1.0f);
     const VF t = hn::Div(hn::Sub(p, one), hn::Add(p, one));
-    n1 = Quartic(t, 1.3721660e+00f, -1.9572672e-01f, 1.4649557e-03f, 4.9206614e-01f, -2.2194129e+00f);
-    n2 = Quartic(t, 1.1333947e+00f, -1.6109826e+00f, -2.1617592e+00f, 3.6247108e+00f, -8.7385243e-01f);
-    n3 = Quartic(t, 7.7374268e-03f, 1.6155617e-01f, 6.7241223e-01f, -1.7122587e+00f, 8.6039489e-01f);
-    n4 = Quartic(t, 1.9230695e-01f, -9.3238670e-01f, 1.8193491e+00f, -1.6823346e+00f, 6.0323278e-01f);
-    d1 = Quartic(t, 1.3747318e+00f, 1.5925148e+00f, 1.8299606e+00f, 3.7837679e+00f, -2.6601556e-02f);
-    d2 = Quartic(t, 1.1370782e+00f, 8.9972996e-01f, -3.1954501e+00f, -2.1541987e+00f, 1.6565238e+00f);
-    d3 = Quartic(t, 6.7636814e-03f, 1.6493128e-01f, 1.0294130e+00f, 9.9251945e-04f, -9.5709276e-01f);
-    d4 = Quartic(t, 1.9232224e-01f, -5.4761477e-01f, 3.3884333e-01f, 4.7578565e-01f, -6.0150746e-01f);
+    n1 = Quartic(t, 1.6788357e+00f, -2.6571658e-01f, -9.7285311e-01f, 6.7753552e-01f, -1.5257638e+00f);
+    n2 = Quartic(t, 1.4400331e+00f, -1.9400336e+00f, -2.8571918e+00f, 4.3650756e+00f, -8.6148605e-01f);
+    n3 = Quartic(t, 1.1078726e-02f, 1.9381193e-01f, 6.3956045e-01f, -1.7428604e+00f, 8.8736029e-01f);
+    n4 = Quartic(t, 3.0349654e-01f, -1.2606537e+00f, 1.7996963e+00f, -9.7733160e-01f, 1.3495070e-01f);
+    d1 = Quartic(t, 1.6884591e+00f, 1.4915258e+00f, 8.8843942e-01f, 4.0596913e+00f, 5.7662356e-01f);
+    d2 = Quartic(t, 1.4362869e+00f, 1.2782921e+00f, -3.9392787e+00f, -3.0020120e+00f, 1.8276416e+00f);
+    d3 = Quartic(t, 1.1504070e-02f, 1.9799998e-01f, 1.0649235e+00f, -1.2121054e-02f, -9.8863578e-01f);
+    d4 = Quartic(t, 3.0348484e-01f, -6.5341909e-01f, -1.1487429e-01f, 7.0711966e-01f, -1.3331494e-01f);
   }
 };
 

@@ -282,6 +282,9 @@ std::optional<double> thickness_of_draw(const FilmMeasurement& m, std::span<cons
   const double rho = m.substrate_line_length_nm ? film_length / inputs[i++] : 1.0;
   const double cosine = std::cos(inputs[i] * kRadianPerDegree);
   if (!std::isfinite(r) || !(film_length > 0.0) || !(rho > 0.0) || !(cosine > 0.0)) return std::nullopt;
+  if (m.method == ThicknessMethod::substrate_line && r > 1.0) return 0.0;
+  const bool of_film = m.method == ThicknessMethod::film_line || m.method == ThicknessMethod::atomic_percent;
+  if (of_film && r >= 1.0) return std::numeric_limits<double>::infinity();
   const std::optional<Reduced> reduced = solve_reduced(m.method, r, rho);
   if (!reduced) return std::nullopt;
   return cone * reduced->x * film_length * cosine;

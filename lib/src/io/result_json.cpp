@@ -86,6 +86,7 @@ Json run_json(const Run& run) {
   Json includes = Json::array();
   if (run.sensitivity_includes_transmission) includes.push_back("transmission");
   if (run.sensitivity_includes_escape_depth) includes.push_back("escape-depth");
+  if (run.sensitivity_includes_asymmetry) includes.push_back("asymmetry");
   const Geometry& g = run.geometry;
   return {{"title", run.title},
           {"record", record},

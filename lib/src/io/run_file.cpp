@@ -318,12 +318,13 @@ void read_sensitivity_options(TomlSection& root, Run& run) {
   const toml::node* includes = root.node("sensitivity_includes");
   if (!includes) return;
   const std::string where = root.where("sensitivity_includes");
-  const std::vector<std::string> names = {"transmission", "escape-depth"};
+  const std::vector<std::string> names = {"transmission", "escape-depth", "asymmetry"};
   if (!includes->is_array()) throw InputError(where, "this is not a list", "expected a list of: " + detail::join_names(names));
   for (const toml::node& item : *includes->as_array()) {
     const auto name = item.value_exact<std::string>();
     if (name == "transmission") run.sensitivity_includes_transmission = true;
     else if (name == "escape-depth") run.sensitivity_includes_escape_depth = true;
+    else if (name == "asymmetry") run.sensitivity_includes_asymmetry = true;
     else throw InputError(where, "\"" + name.value_or("?") + "\" is not known here", "expected a list of: " + detail::join_names(names));
   }
 }

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 #include <functional>
+#include <set>
 #include <unordered_map>
 
 #include "base/nearest.hpp"
@@ -66,9 +67,55 @@ struct KeyHash {
   }
 };
 
+/// Correlation of two components: 1 with itself, else as stated.
+double correlation_of(const Run& run, const std::string& a, const std::string& b) {
+  if (a == b) return 1.0;
+  for (const AreaCorrelation& c : run.area_correlations) {
+    if ((c.first == a && c.second == b) || (c.first == b && c.second == a)) return c.coefficient;
+  }
+  return 0.0;
+}
+
+/// What is kept of a component for the correlation of lines.
+struct Part {
+  const Component* component;
+  double sd;
+};
+
+/// Correlations of all pairs of lines of one spot. @param parts by line
+std::vector<LineCorrelation> line_correlations(const Run& run, const std::vector<std::vector<Part>>& parts, const std::vector<std::optional<LineArea>>& lines) {
+  std::vector<LineCorrelation> all;
+  for (std::size_t a = 0; a < lines.size(); ++a) {
+    for (std::size_t b = a + 1; b < lines.size(); ++b) {
+      if (!lines[a] || !lines[b] || !(lines[a]->sd > 0.0) || !(lines[b]->sd > 0.0)) continue;
+      double covariance = 0.0;
+      for (const Part& i : parts[a]) {
+        for (const Part& j : parts[b]) {
+          covariance += i.component->weight * j.component->weight * correlation_of(run, i.component->label, j.component->label) * i.sd * j.sd;
+        }
+      }
+      if (covariance != 0.0) all.push_back({a, b, std::clamp(covariance / (lines[a]->sd * lines[b]->sd), -1.0, 1.0)});
+    }
+  }
+  return all;
+}
+
+/// True when areas of different lines can be correlated at all.
+bool lines_may_correlate(const Run& run) {
+  if (!run.area_correlations.empty()) return true;
+  std::set<std::string> seen;
+  for (const Line& line : run.lines) {
+    for (const Component& part : line.components) {
+      if (!seen.insert(part.label).second) return true;
+    }
+  }
+  return false;
+}
+
 /// Sum of the components of one line. The correlations of a run are between component labels.
 LineArea sum_components(const Run& run, const std::vector<const Component*>& parts, const std::vector<ComponentArea>& areas) {
   LineArea sum;
+  sum.not_detected_stated = true;
   double variance = 0.0, zero_variance = 0.0;
   bool zero_known = true, counts_known = true;
   for (std::size_t i = 0; i < parts.size(); ++i) {
@@ -80,15 +127,11 @@ LineArea sum_components(const Run& run, const std::vector<const Component*>& par
     zero_known = zero_known && a.sd_at_zero.has_value();
     counts_known = counts_known && a.one_count.has_value();
     if (a.one_count) sum.one_count = std::max(sum.one_count.value_or(0.0), w * *a.one_count);
-    sum.not_detected_stated = sum.not_detected_stated || a.not_detected_stated;
+    sum.not_detected_stated = sum.not_detected_stated && a.not_detected_stated;
     sum.sd_assumed = sum.sd_assumed || a.sd_assumed;
     sum.background_missing = sum.background_missing || a.background_missing;
     for (std::size_t j = 0; j < i; ++j) {
-      for (const AreaCorrelation& c : run.area_correlations) {
-        const bool match = (c.first == parts[i]->label && c.second == parts[j]->label) ||
-                           (c.first == parts[j]->label && c.second == parts[i]->label);
-        if (match) variance += 2.0 * c.coefficient * w * parts[j]->weight * a.sd * areas[j].area.sd;
-      }
+      variance += 2.0 * correlation_of(run, parts[i]->label, parts[j]->label) * w * parts[j]->weight * a.sd * areas[j].area.sd;
     }
   }
   sum.sd = std::sqrt(std::max(variance, 0.0));
@@ -158,6 +201,8 @@ std::vector<Measurement> collect_measurements(const Run& run) {
   all.reserve(groups.size());
   std::vector<const Component*> parts;
   std::vector<ComponentArea> areas;
+  const bool may_correlate = lines_may_correlate(run);
+  std::vector<std::vector<Part>> parts_of_lines(run.lines.size());
   for (const Group& group : groups) {
     Measurement m{group.table, std::string(group.spot), group.emission_deg, {}, {}};
     m.lines.resize(run.lines.size());
@@ -179,7 +224,11 @@ std::vector<Measurement> collect_measurements(const Run& run) {
         }
       }
       if (m.missing[l].empty()) m.lines[l] = sum_components(run, parts, areas);
+      if (!may_correlate) continue;
+      parts_of_lines[l].clear();
+      for (std::size_t i = 0; i < areas.size(); ++i) parts_of_lines[l].push_back({parts[i], areas[i].area.sd});
     }
+    if (may_correlate) m.correlations = line_correlations(run, parts_of_lines, m.lines);
     all.push_back(std::move(m));
   }
   return all;

@@ -13,7 +13,7 @@ namespace pellicle::detail {
 struct LineArea {
   double value = 0.0;
   double sd = 0.0;
-  bool not_detected_stated = false;       ///< a component is "nd"
+  bool not_detected_stated = false;       ///< all components are "nd"; one alone adds 0 ± what it may be
   std::optional<double> sd_at_zero;       ///< standard uncertainty of a signal of zero; nothing: not known
   std::optional<double> one_count;        ///< area of one count, when counts are known
   bool sd_assumed = false;
@@ -26,12 +26,19 @@ struct LineArea {
   [[nodiscard]] bool detected() const;
 };
 
+/// Correlation of the areas of two lines, from that of their components.
+struct LineCorrelation {
+  std::size_t first, second;  ///< positions in Run::lines
+  double coefficient;
+};
+
 struct Measurement {
   std::size_t table = 0;
   std::string spot;
   double emission_deg = 0.0;
   std::vector<std::optional<LineArea>> lines;  ///< by position in Run::lines; nothing: a component has no row
   std::vector<std::string> missing;            ///< labels without a row, or without what "nd" needs
+  std::vector<LineCorrelation> correlations = {};
 };
 
 /// In the order in which spots first appear. @throws InputError for an undeclared line, a doubled row or a row

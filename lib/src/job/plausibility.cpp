@@ -57,7 +57,7 @@ void note_implausible(const Run& run, const Line& film, const Line& substrate, T
   if (!in_film || !in_metal) return;
   const double implied = route.reference_ratio->value * *in_metal / *in_film;
   if (const auto quotient = nearest_quotient(implied, oxide, metal, symbol); quotient && (*quotient < 0.5 || *quotient > 2.0)) {
-    add_finding(route.findings, {"reference_ratio_implausible", Severity::warning,
+    add_finding(route.findings, {"reference_ratio_implausible", *quotient < 0.2 || *quotient > 5.0 ? Severity::error : Severity::warning,
                                  "the reference ratio implies an atom-density ratio of film and substrate " + rounded_text(*quotient, 2) +
                                      " times that of the catalogued pair; is it film over substrate?",
                                  *quotient, *quotient < 0.5 ? 0.5 : 2.0});

@@ -24,8 +24,6 @@ constexpr double kAsymmetrySd = 0.05;
 constexpr double kCrossSectionRelativeSd = 0.03;
 /// Relative standard uncertainty of a predicted IMFP.
 constexpr double kImfpRelativeSd = 0.10;
-/// Quantities from one formula share most of their error.
-constexpr double kSameFormulaCorrelation = 0.9;
 
 struct TableRatio {
   std::string key, film, substrate, line, source, mark;
@@ -75,20 +73,22 @@ SignalFactor atom_density(const Run& run, const Line& line) {
   return {tag("density", line), relative(atom_density_per_nm3(material, line.level->element->symbol), sd), 1.0, ContributionKind::scale};
 }
 
-ModelValue primary_imfp(const Material& material, double energy_ev) {
-  ModelValue value = predict_imfp(material, energy_ev, ImfpModel::tpp2m);
-  return value.value_nm ? value : predict_imfp(material, energy_ev, ImfpModel::s1);
+/// Signal of an infinitely thick layer of a line's material, up to a constant common to all lines.
+struct ThickSignal {
+  std::vector<SignalFactor> factors;  ///< with power +1
+  std::vector<std::string> applied;   ///< in words
+  std::string imfp_formula;
+};
+
+void add_imfp(const Run& run, const Line& line, ThickSignal& signal) {
+  const ModelValue imfp = signal_imfp(run.sample.material(line.from), line.kinetic_energy_ev);
+  signal.factors.push_back({tag("imfp", line), relative(*imfp.value_nm, kImfpRelativeSd), 1.0, ContributionKind::scale});
+  signal.imfp_formula = imfp.model;
 }
 
-double required_imfp_nm(const Material& material, double energy_ev) {
-  const ModelValue value = primary_imfp(material, energy_ev);
-  if (!value.value_nm) throw DomainError(material.id, value.refusal, "give the reference ratio or reference areas");
-  return *value.value_nm;
-}
-
-SignalFactor imfp_factor(const Run& run, const Line& line) {
-  return {tag("imfp", line), relative(required_imfp_nm(run.sample.material(line.from), line.kinetic_energy_ev), kImfpRelativeSd), 1.0,
-          ContributionKind::scale};
+/// What a sensitivity, or an atomic percentage, with an average escape depth in it has of E^0.75 already.
+void take_out_escape_depth(const Line& line, ThickSignal& signal) {
+  signal.factors.push_back({tag("escape_depth", line), Quantity(average_escape_depth_weight(line.kinetic_energy_ev), 0.0), 1.0, ContributionKind::scale});
 }
 
 /// W = 1 + (β/2)(3/2 sin²γ − 1), unpolarised X-rays. @cite reilman1976
@@ -109,114 +109,198 @@ SignalFactor asymmetry_factor(const Run& run, const Line& line, Findings& findin
   return {tag("asymmetry", line), Quantity(1.0 + *beta.value * slope, kAsymmetrySd * std::abs(slope)), 1.0, ContributionKind::scale};
 }
 
-void add_transmission(const Run& run, const Line& line, std::vector<SignalFactor>& factors) {
+void add_transmission(const Run& run, const Line& line, ThickSignal& signal) {
   if (!line.transmission) {
     throw InputError(run.place, "areas are raw and line \"" + line.label + "\" states no transmission",
                      "give transmission for every line, or correct the areas and say transmission = \"corrected\"");
   }
-  factors.push_back({tag("transmission", line), *line.transmission, 1.0, ContributionKind::scale});
+  signal.factors.push_back({tag("transmission", line), *line.transmission, 1.0, ContributionKind::scale});
+  signal.applied.emplace_back("transmission");
 }
 
-/// Factors of a sensitivity that already hold the escape depth or relate to pure elements or an average matrix.
-void add_matrix_factors(const Run& run, const Line& line, bool shared_line, std::vector<SignalFactor>& factors,
-                        std::vector<std::string>& applied) {
-  factors.push_back(atom_density(run, line));
-  applied.emplace_back("atom density");
-  if (run.sensitivity_kind == SensitivityKind::atomic) {
-    if (!run.sensitivity_includes_escape_depth) {
-      factors.push_back(imfp_factor(run, line));
-      applied.emplace_back("IMFP (Q = 1)");
-    }
-    return;
+void add_asymmetry(const Run& run, const Line& line, ThickSignal& signal, Findings& findings) {
+  signal.factors.push_back(asymmetry_factor(run, line, findings));
+  signal.applied.emplace_back("asymmetry");
+}
+
+/// The solid that "elemental" sensitivities of an element were measured on.
+const Material& pure_solid(const Run& run, const Line& line) {
+  const std::string& symbol = line.level->element->symbol;
+  // Of the forms of carbon the one that is common practice.
+  if (symbol == "C") return catalogue_material("graphite");
+  try {
+    return catalogue_material(symbol);
+  } catch (const InputError&) {
+    throw InputError(run.place, "no pure solid of " + symbol + " is catalogued, so the elemental sensitivity of \"" + line.label + "\" cannot be turned into a signal",
+                     "give atomic or average-matrix sensitivities");
   }
-  if (run.sensitivity_includes_escape_depth) {
+}
+
+/// Atoms and escape depth, as the kind of the sensitivity asks for them.
+void add_matrix_factors(const Run& run, const Line& line, bool shared_line, ThickSignal& signal) {
+  const Material& material = run.sample.material(line.from);
+  const bool by_definition = run.sensitivity_kind != SensitivityKind::atomic;
+  if (by_definition && run.sensitivity_includes_escape_depth) {
     throw InputError(run.place, std::string(sensitivity_kind_name(run.sensitivity_kind)) + " sensitivities hold the escape depth by definition",
                      "leave \"escape-depth\" out of sensitivity_includes");
   }
-  factors.push_back(imfp_factor(run, line));
-  if (shared_line) return;
-  if (run.sensitivity_kind == SensitivityKind::elemental) {
-    const Material& pure = catalogue_material(line.level->element->symbol);
-    const double own = atom_density_per_nm3(pure, line.level->element->symbol) * required_imfp_nm(pure, line.kinetic_energy_ev);
-    factors.push_back({tag("pure_element", line), relative(1.0 / own, assumed_value("bulk_density_relative_sd")), 1.0, ContributionKind::scale});
-    applied.emplace_back("density and IMFP over those of the pure element");
-  } else {
-    // The average matrix is the same for both lines but for the energy of its IMFP.
-    factors.push_back({tag("average_matrix", line), Quantity(std::pow(line.kinetic_energy_ev, -kAverageMatrixExponent), 0.0), 1.0, ContributionKind::scale});
-    applied.emplace_back("density and IMFP over those of an average matrix (IMFP ∝ E^0.75)");
+  if (run.sensitivity_kind == SensitivityKind::elemental && !shared_line) {
+    if (material.formula.terms().size() == 1) {
+      signal.applied.emplace_back("nothing more: it is the pure element");
+      return;
+    }
+    const Material& pure = pure_solid(run, line);
+    const double own = atom_density_per_nm3(pure, line.level->element->symbol) * *signal_imfp(pure, line.kinetic_energy_ev).value_nm;
+    signal.factors.push_back({tag("pure_element", line), relative(1.0 / own, assumed_value("bulk_density_relative_sd")), 1.0, ContributionKind::scale});
+    signal.factors.push_back(atom_density(run, line));
+    add_imfp(run, line, signal);
+    signal.applied.emplace_back("density and IMFP over those of the pure element");
+    return;
   }
+  signal.factors.push_back(atom_density(run, line));
+  add_imfp(run, line, signal);
+  signal.applied.emplace_back("atom density");
+  if (run.sensitivity_kind == SensitivityKind::elemental || (!by_definition && !run.sensitivity_includes_escape_depth)) {
+    signal.applied.emplace_back("IMFP (Q = 1)");
+    return;
+  }
+  // An average escape depth is the same for both lines but for its energy, so nothing is taken out for one line.
+  if (!shared_line) take_out_escape_depth(line, signal);
+  signal.applied.emplace_back("IMFP over that of an average matrix (∝ E^0.75)");
+}
+
+ThickSignal signal_from_sensitivity(const Run& run, const Line& line, bool shared_line, Findings& findings) {
+  ThickSignal signal;
+  signal.factors.push_back({tag("sensitivity", line), with_assumed_sensitivity(*line.sensitivity, findings), 1.0, ContributionKind::scale});
+  signal.applied.push_back(std::string(sensitivity_kind_name(run.sensitivity_kind)) + " sensitivity");
+  add_matrix_factors(run, line, shared_line, signal);
+  if (run.sensitivity_includes_transmission && run.transmission_corrected) {
+    throw InputError(run.place, "the sensitivities hold the transmission, but the areas are corrected for it already",
+                     "give raw areas with transmission = \"raw\", or sensitivities without it");
+  }
+  if (shared_line) return signal;
+  if (!run.transmission_corrected && !run.sensitivity_includes_transmission) add_transmission(run, line, signal);
+  // Elemental and average-matrix sensitivities belong to the geometry they were measured in.
+  if (run.sensitivity_kind == SensitivityKind::atomic && !run.sensitivity_includes_asymmetry) add_asymmetry(run, line, signal, findings);
+  return signal;
+}
+
+ThickSignal computed_signal(const Run& run, const Line& line, bool shared_line, Findings& findings) {
+  ThickSignal signal;
+  signal.factors.push_back(atom_density(run, line));
+  add_imfp(run, line, signal);
+  signal.applied = {"atom density", "IMFP (Q = 1)"};
+  if (shared_line) return signal;
+  if (run.area_unit == AreaUnit::atomic_percent) {
+    if (run.sensitivity_includes_escape_depth) {
+      take_out_escape_depth(line, signal);
+      signal.applied.back() = "IMFP over that of an average matrix (∝ E^0.75)";
+    }
+    add_finding(findings, {"atomic_percent_assumption", Severity::warning,
+                           std::string("apparent atomic % is taken as area over a sensitivity that holds cross section, asymmetry and "
+                                       "transmission ") +
+                               (run.sensitivity_includes_escape_depth ? "and an average escape depth" : "but no escape depth") +
+                               " (sensitivity_includes says which)"});
+    return signal;
+  }
+  const TabulatedValue section = photoionisation_cross_section_barn(*line.level, run.source);
+  if (!section.value) throw DomainError(run.place, section.refusal);
+  signal.factors.push_back({tag("cross_section", line), relative(*section.value, kCrossSectionRelativeSd), 1.0, ContributionKind::scale});
+  signal.applied.emplace_back("cross section");
+  add_asymmetry(run, line, signal, findings);
+  if (!run.transmission_corrected) add_transmission(run, line, signal);
+  return signal;
+}
+
+/// @param shared_line the other line of the pair is the same line, so whatever depends on level and energy alone
+///        (cross section, asymmetry, transmission) cancels and is neither used nor asked for
+ThickSignal thick_signal(const Run& run, const Line& line, bool from_sensitivity, bool shared_line, Findings& findings) {
+  if (!line.level) {
+    throw InputError(run.place, "line \"" + line.label + "\" is known by its kinetic energy alone, so no atom density can be worked out for it",
+                     "give level, or reference areas");
+  }
+  ThickSignal signal = from_sensitivity ? signal_from_sensitivity(run, line, shared_line, findings) : computed_signal(run, line, shared_line, findings);
+  if (line.main_peak_fraction) {
+    signal.factors.push_back({tag("main_peak_fraction", line), *line.main_peak_fraction, 1.0, ContributionKind::scale});
+    signal.applied.emplace_back("main-peak fraction");
+  }
+  return signal;
 }
 
 /// Everything that depends on level and energy alone is one for a pair of the same line.
 bool same_level(const Line& a, const Line& b) { return a.level && b.level && a.level->name == b.level->name; }
 
-void correlate(ThicknessRoute& route, const std::string& a, const std::string& b) {
-  const auto has = [&](const std::string& name) {
-    return std::any_of(route.factors.begin(), route.factors.end(), [&](const SignalFactor& f) { return f.name == name; });
-  };
-  if (has(a) && has(b)) route.correlations.push_back({a, b, kSameFormulaCorrelation});
-}
-
-/// The lengths of the film and the IMFPs of a computed signal come from one formula.
-void correlate_lengths(ThicknessRoute& route) {
-  correlate(route, "imfp_film", "imfp_substrate");
-  if (!route.film_length.predicted) return;
-  const char* film_name = route.substrate_length ? kFilmLengthName : kLengthName;
-  for (const char* imfp : {"imfp_film", "imfp_substrate"}) {
-    const bool present = std::any_of(route.factors.begin(), route.factors.end(), [&](const SignalFactor& f) { return f.name == imfp; });
-    if (!present) continue;
-    route.correlations.push_back({imfp, film_name, kSameFormulaCorrelation});
-    if (route.substrate_length && route.substrate_length->predicted) {
-      route.correlations.push_back({imfp, kSubstrateLengthName, kSameFormulaCorrelation});
-    }
-  }
-}
-
 void add_computed_ratio(const Run& run, const Line& film, const Line& substrate, bool from_sensitivity, ThicknessRoute& route) {
-  std::vector<std::string> applied;
   const bool shared = same_level(film, substrate);
-  std::vector<SignalFactor> film_signal = thick_signal(run, film, from_sensitivity, shared, applied, route.findings);
-  applied.clear();
-  std::vector<SignalFactor> substrate_signal = thick_signal(run, substrate, from_sensitivity, shared, applied, route.findings);
+  ThickSignal film_signal = thick_signal(run, film, from_sensitivity, shared, route.findings);
+  ThickSignal substrate_signal = thick_signal(run, substrate, from_sensitivity, shared, route.findings);
   if (shared && from_sensitivity && film.sensitivity->value == substrate.sensitivity->value) {
     // One factor for both: it cancels, its error too.
-    for (auto* factors : {&film_signal, &substrate_signal}) {
-      std::erase_if(*factors, [](const SignalFactor& f) { return f.name.starts_with("sensitivity_"); });
+    for (ThickSignal* signal : {&film_signal, &substrate_signal}) {
+      std::erase_if(signal->factors, [](const SignalFactor& f) { return f.name.starts_with("sensitivity_"); });
     }
   }
-  const double ratio = product(film_signal).value / product(substrate_signal).value;
-  for (SignalFactor& f : film_signal) {
+  const Quantity film_product = product(film_signal.factors), substrate_product = product(substrate_signal.factors);
+  const double ratio = film_product.value / substrate_product.value;
+  double variance = std::pow(film_product.sd() / film_product.value, 2) + std::pow(substrate_product.sd() / substrate_product.value, 2);
+  if (!film_signal.imfp_formula.empty() && film_signal.imfp_formula == substrate_signal.imfp_formula) {
+    variance -= 2.0 * kSameFormulaCorrelation * kImfpRelativeSd * kImfpRelativeSd;
+  }
+  for (SignalFactor& f : film_signal.factors) {
     f.power = -f.power;
     route.factors.push_back(f);
   }
-  for (const SignalFactor& f : substrate_signal) route.factors.push_back(f);
-  route.reference_applied = applied;
+  for (const SignalFactor& f : substrate_signal.factors) route.factors.push_back(f);
+  for (const auto& [name, signal] : {std::pair{"imfp_film", &film_signal}, {"imfp_substrate", &substrate_signal}}) {
+    if (!signal->imfp_formula.empty()) route.formulas.emplace_back(name, signal->imfp_formula);
+  }
+  route.reference_applied = substrate_signal.applied.size() > film_signal.applied.size() ? substrate_signal.applied : film_signal.applied;
   route.reference_origin = from_sensitivity ? "sensitivities" : "computed";
-  double variance = std::pow(product(film_signal).sd() / product(film_signal).value, 2) +
-                    std::pow(product(substrate_signal).sd() / product(substrate_signal).value, 2);
-  if (!from_sensitivity) {
+  if (!from_sensitivity || shared) {
     const double sd = assumed_value("computed_reference_ratio_relative_sd");
     route.factors.push_back({"computed_reference_ratio", Quantity(1.0, sd), -1.0, ContributionKind::scale});
     variance += sd * sd;
     add_finding(route.findings,
                 {"reference_computed", Severity::warning,
-                 "the reference ratio is computed: intrinsic losses outside the fitted peaks are not in it, and it may be wrong by "
-                 "a factor of nearly two (silicon dioxide on silicon: 0.5 computed, 0.93 measured)",
+                 std::string(from_sensitivity ? "film and substrate show the same line, so its sensitivity cancels and the reference ratio is computed"
+                                              : "the reference ratio is computed") +
+                     ": intrinsic losses outside the fitted peaks are not in it, and it may be wrong by "
+                     "a factor of nearly two (silicon dioxide on silicon: 0.5 computed, 0.93 measured)",
                  ratio});
   }
   add_finding(route.findings, {"elastic_factor_not_applied", Severity::note,
-                               "the signal of a thick layer is taken as density times IMFP, without the factor Q of elastic scattering "
-                               "(1 here); it would change a ratio by a few per cent"});
+                               "elastic scattering is left out of the signal of a thick layer: density times IMFP without the factor Q (1 here), "
+                               "and the asymmetry of free atoms; this would change a ratio by a few per cent"});
   route.reference_ratio = Quantity(ratio, ratio * std::sqrt(variance));
-  correlate_lengths(route);
 }
 
-void add_tilt_factor(const Run& run, const Line& line, double power, ThicknessRoute& route, const char* name) {
-  if (!line.reference_emission_deg || run.geometry.signal_area == SignalArea::analyser) return;
-  route.factors.push_back({name, Quantity(tilt_factor(run.geometry, *line.reference_emission_deg), 0.0), power, ContributionKind::scale});
+/// What the tilt did to a reference area, as power of r. @return the factor
+double add_tilt_factor(const Run& run, const Line& line, double power, ThicknessRoute& route, const char* name) {
+  if (!line.reference_emission_deg || run.geometry.signal_area == SignalArea::analyser) return 1.0;
+  const double factor = tilt_factor(run.geometry, *line.reference_emission_deg);
+  route.factors.push_back({name, Quantity(factor, 0.0), power, ContributionKind::scale});
+  return factor;
 }
 
 }  // namespace
+
+double average_escape_depth_weight(double energy_ev) noexcept { return std::pow(energy_ev, -kAverageMatrixExponent); }
+
+ModelValue signal_imfp(const Material& material, double energy_ev) {
+  ModelValue value = predict_imfp(material, energy_ev, ImfpModel::tpp2m);
+  if (!value.value_nm) value = predict_imfp(material, energy_ev, ImfpModel::s1);
+  if (!value.value_nm) throw DomainError(material.id, value.refusal, "give the reference ratio or reference areas");
+  return value;
+}
+
+void correlate_formulas(ThicknessRoute& route) {
+  for (std::size_t a = 0; a < route.formulas.size(); ++a) {
+    for (std::size_t b = a + 1; b < route.formulas.size(); ++b) {
+      if (route.formulas[a].second != route.formulas[b].second) continue;
+      route.correlations.push_back({route.formulas[a].first, route.formulas[b].first, kSameFormulaCorrelation});
+    }
+  }
+}
 
 Quantity product(const std::vector<SignalFactor>& factors) {
   double value = 1.0, variance = 0.0;
@@ -266,53 +350,6 @@ LineScale line_scale(const Run& run) {
   return sensitivities.empty() ? LineScale::none : LineScale::sensitivity;
 }
 
-std::vector<SignalFactor> thick_signal(const Run& run, const Line& line, bool from_sensitivity, bool shared_line,
-                                       std::vector<std::string>& applied, Findings& findings) {
-  if (!line.level) {
-    throw InputError(run.place, "line \"" + line.label + "\" is known by its kinetic energy alone, so no atom density can be worked out for it",
-                     "give level, or reference areas");
-  }
-  std::vector<SignalFactor> factors;
-  if (from_sensitivity) {
-    factors.push_back({tag("sensitivity", line), with_assumed_sensitivity(*line.sensitivity, findings), 1.0, ContributionKind::scale});
-    applied.push_back(std::string(sensitivity_kind_name(run.sensitivity_kind)) + " sensitivity");
-    add_matrix_factors(run, line, shared_line, factors, applied);
-    if (run.sensitivity_includes_transmission && run.transmission_corrected) {
-      throw InputError(run.place, "the sensitivities hold the transmission, but the areas are corrected for it already",
-                       "give raw areas with transmission = \"raw\", or sensitivities without it");
-    }
-    if (!shared_line && !run.transmission_corrected && !run.sensitivity_includes_transmission) {
-      add_transmission(run, line, factors);
-      applied.emplace_back("transmission");
-    }
-    if (!shared_line && run.sensitivity_kind == SensitivityKind::atomic) {
-      factors.push_back(asymmetry_factor(run, line, findings));
-      applied.emplace_back("asymmetry");
-    }
-  } else {
-    factors.push_back(atom_density(run, line));
-    factors.push_back(imfp_factor(run, line));
-    applied = {"atom density", "IMFP (Q = 1)"};
-    if (!shared_line && run.area_unit != AreaUnit::atomic_percent) {
-      const TabulatedValue section = photoionisation_cross_section_barn(*line.level, run.source);
-      if (!section.value) throw DomainError(run.place, section.refusal);
-      factors.push_back({tag("cross_section", line), relative(*section.value, kCrossSectionRelativeSd), 1.0, ContributionKind::scale});
-      factors.push_back(asymmetry_factor(run, line, findings));
-      applied.emplace_back("cross section");
-      applied.emplace_back("asymmetry");
-      if (!run.transmission_corrected) {
-        add_transmission(run, line, factors);
-        applied.emplace_back("transmission");
-      }
-    }
-  }
-  if (line.main_peak_fraction) {
-    factors.push_back({tag("main_peak_fraction", line), *line.main_peak_fraction, 1.0, ContributionKind::scale});
-    applied.emplace_back("main-peak fraction");
-  }
-  return factors;
-}
-
 void add_reference_ratio(const Run& run, const ReferenceRatio* reference, const Line& film, const Line& substrate, ThicknessRoute& route) {
   if (reference && reference->origin == ReferenceOrigin::computed) {
     add_computed_ratio(run, film, substrate, false, route);
@@ -348,13 +385,13 @@ void add_reference_ratio(const Run& run, const ReferenceRatio* reference, const 
   const Quantity& s = *substrate.reference_area;
   route.factors.push_back({"reference_film_area", f, -1.0, ContributionKind::scale, true});
   route.factors.push_back({"reference_substrate_area", s, 1.0, ContributionKind::scale, true});
-  add_tilt_factor(run, film, 1.0, route, "tilt_of_film_reference");
-  add_tilt_factor(run, substrate, -1.0, route, "tilt_of_substrate_reference");
+  const double film_tilt = add_tilt_factor(run, film, 1.0, route, "tilt_of_film_reference");
+  const double substrate_tilt = add_tilt_factor(run, substrate, -1.0, route, "tilt_of_substrate_reference");
   if (film.reference_emission_deg.has_value() != substrate.reference_emission_deg.has_value() && run.geometry.signal_area != SignalArea::analyser) {
     throw InputError(run.place, "only one of the reference areas states its emission_deg", "state both angles");
   }
   route.reference_origin = "reference areas";
-  route.reference_ratio = Quantity(f.value / s.value);
+  route.reference_ratio = Quantity(f.value / film_tilt / (s.value / substrate_tilt));
   if (f.standard_uncertainty && s.standard_uncertainty) {
     route.reference_ratio->standard_uncertainty = route.reference_ratio->value * std::hypot(f.sd() / f.value, s.sd() / s.value);
   }
@@ -367,6 +404,10 @@ void add_reference_area(const Run& run, const Line& line, ThicknessRoute& route)
   route.factors.push_back({"reference_area", *line.reference_area, -1.0, ContributionKind::scale, true});
   route.reference_ratio = line.reference_area;
   route.reference_origin = "reference area";
+  if (run.geometry.signal_area != SignalArea::analyser && !line.reference_emission_deg) {
+    throw InputError(run.place, "the reference_area of \"" + line.label + "\" states no emission_deg, and areas change with the tilt here",
+                     "write reference_area = { value = …, sd = …, emission_deg = … }");
+  }
   add_tilt_factor(run, line, 1.0, route, "tilt_of_reference");
 }
 

@@ -20,12 +20,17 @@ void add_reference_ratio(const Run& run, const ReferenceRatio* reference, const 
 /// Adds the reference area of a single line. @throws InputError when it has none
 void add_reference_area(const Run& run, const Line& line, ThicknessRoute& route);
 
-/// Signal of an infinitely thick layer of a line's material, up to a constant common to all lines: factors with
-/// power +1. @param from_sensitivity true: S of the line; false: computed from cross section and asymmetry
-/// @param shared_line the other line of the pair is the same line, so whatever depends on level and energy alone
-///        (cross section, asymmetry, transmission) cancels and is neither used nor asked for
-[[nodiscard]] std::vector<SignalFactor> thick_signal(const Run& run, const Line& line, bool from_sensitivity, bool shared_line,
-                                                     std::vector<std::string>& applied, Findings& findings);
+/// Inputs of one formula or set share most of their error; those of different ones share none.
+inline constexpr double kSameFormulaCorrelation = 0.9;
+
+/// Correlates the inputs of a route that come from one formula. A set of equal coefficients is always possible.
+void correlate_formulas(ThicknessRoute& route);
+
+/// IMFP of a thick layer's signal: TPP-2M, or S1 where that is refused. @throws DomainError when both are
+[[nodiscard]] ModelValue signal_imfp(const Material& material, double energy_ev);
+
+/// 1/E^0.75: takes the escape depth of an average matrix out of what holds it.
+[[nodiscard]] double average_escape_depth_weight(double energy_ev) noexcept;
 
 /// A sensitivity with its uncertainty: the stated one, or the assumed one with its finding.
 [[nodiscard]] Quantity with_assumed_sensitivity(Quantity sensitivity, Findings& findings);

@@ -3,6 +3,7 @@
 #include <cmath>
 
 #include "base/nearest.hpp"
+#include "job/contamination.hpp"
 #include "job/length_choice.hpp"
 #include "job/plausibility.hpp"
 #include "job/reference.hpp"
@@ -12,9 +13,6 @@
 
 namespace pellicle {
 namespace {
-
-/// Two lengths predicted by one formula for one material share nearly all of their error.
-constexpr double kSameFormulaCorrelation = 0.9;
 
 std::size_t line_index(const Run& run, const std::string& label) {
   std::vector<std::string> labels;
@@ -95,8 +93,6 @@ void set_pair_lengths(const Run& run, const Line& film, const Line& substrate, T
     route.film_length = detail::choose_length(run, film, layer, film.kinetic_energy_ev);
     route.substrate_length = detail::choose_length(run, substrate, layer, substrate.kinetic_energy_ev);
     add_findings(route.findings, route.substrate_length->findings);
-    const bool one_source = route.film_length.origin == route.substrate_length->origin && route.film_length.origin != "given";
-    if (one_source) route.correlations.push_back({kFilmLengthName, kSubstrateLengthName, kSameFormulaCorrelation});
     constexpr double kFarApart = 1.5;
     const double apart = std::max(film.kinetic_energy_ev, substrate.kinetic_energy_ev) / std::min(film.kinetic_energy_ev, substrate.kinetic_energy_ev);
     if (apart > kFarApart) {
@@ -107,6 +103,8 @@ void set_pair_lengths(const Run& run, const Line& film, const Line& substrate, T
     }
   }
   add_findings(route.findings, route.film_length.findings);
+  if (!route.film_length.formula.empty()) route.formulas.emplace_back(route.substrate_length ? kFilmLengthName : kLengthName, route.film_length.formula);
+  if (route.substrate_length && !route.substrate_length->formula.empty()) route.formulas.emplace_back(kSubstrateLengthName, route.substrate_length->formula);
 }
 
 ThicknessRoute pair_route(const Run& run, const ReferenceRatio* reference, std::size_t film_index, std::size_t substrate_index) {
@@ -119,6 +117,7 @@ ThicknessRoute pair_route(const Run& run, const ReferenceRatio* reference, std::
   set_layer(run, film.from, &film, route);
   set_pair_lengths(run, film, substrate, route);
   detail::add_reference_ratio(run, reference, film, substrate, route);
+  detail::correlate_formulas(route);
   detail::note_implausible(run, film, substrate, route);
   return route;
 }
@@ -150,7 +149,7 @@ void note_route(ContaminationRoute route, Findings& findings) {
     case ContaminationRoute::reference: return;
     case ContaminationRoute::sensitivities:
       add_finding(findings, {"contamination_assumption", Severity::warning,
-                             "the contamination thickness assumes that the other lines together show all atoms of one solid below it"});
+                             "the contamination thickness assumes that all other lines come from one solid, the layer just below it"});
       return;
     case ContaminationRoute::atomic_percent: break;
   }
@@ -190,30 +189,8 @@ ThicknessRoute contamination_route_of(const Run& run) {
     case ContaminationRoute::sensitivities: break;
   }
   route.method = ThicknessMethod::ratio;
-  for (const Line& other : run.lines) {
-    if (!other.sensitivity && run.area_unit != AreaUnit::atomic_percent) {
-      throw InputError(run.place, "line \"" + other.label + "\" states no sensitivity, which the contamination route needs for every line");
-    }
-  }
   route.reference_origin = "sensitivities";
-  // Atoms times IMFP of the contamination over those of the solid just below it.
-  const std::string below = run.sample.layers.size() > 1 ? run.sample.layers[1].name : std::string(kSubstrate);
-  const Material& solid = run.sample.material(below);
-  const Material& film = run.sample.material(c.layer);
-  double atoms_below = 0.0;
-  for (const FormulaTerm& term : solid.formula.terms()) {
-    if (term.element->z > 1) atoms_below += atom_density_per_nm3(solid, term.element->symbol);
-  }
-  const auto imfp = [&](const Material& material) {
-    ModelValue value = predict_imfp(material, line.kinetic_energy_ev, ImfpModel::tpp2m);
-    if (!value.value_nm) value = predict_imfp(material, line.kinetic_energy_ev, ImfpModel::s1);
-    if (!value.value_nm) throw DomainError(material.id, value.refusal);
-    return *value.value_nm;
-  };
-  const double ratio = atom_density_per_nm3(film, "C") * imfp(film) / (atoms_below * imfp(solid));
-  const double density = assumed_value("film_density_relative_sd");
-  route.reference_ratio = Quantity(ratio, ratio * std::hypot(density, density));
-  route.reference_applied = {"atom densities", "IMFP (Q = 1)"};
+  route.reference_ratio = detail::contamination_reference(run, line, route.reference_applied);
   route.factors.push_back({"reference_ratio", *route.reference_ratio, -1.0, ContributionKind::scale});
   return route;
 }
@@ -222,6 +199,13 @@ ThicknessRoute contamination_route_of(const Run& run) {
 
 std::vector<ThicknessRoute> thickness_routes(const Run& run) {
   std::vector<ThicknessRoute> routes;
+  if (run.area_unit == AreaUnit::atomic_percent) {
+    for (const Line& line : run.lines) {
+      if (!line.sensitivity) continue;
+      throw InputError(run.place, "line \"" + line.label + "\" states a sensitivity, but areas in atomic-percent are divided by one already",
+                       "leave sensitivity out, or give the areas before that division");
+    }
+  }
   if (run.contamination) routes.push_back(contamination_route_of(run));
   if (run.method != ThicknessMethod::ratio) {
     for (std::size_t i = 0; i < run.lines.size(); ++i) {

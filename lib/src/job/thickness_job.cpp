@@ -3,20 +3,18 @@
 
 #include <algorithm>
 #include <cmath>
-#include <map>
 
-#include <boost/math/distributions/chi_squared.hpp>
-
+#include "job/bounds.hpp"
+#include "job/contamination.hpp"
 #include "job/finding_pool.hpp"
 #include "job/measurements.hpp"
 #include "job/overlying.hpp"
-#include "job/reference.hpp"
+#include "job/summary.hpp"
 #include "job/thickness_monte_carlo.hpp"
-#include "pellicle/base/constants.hpp"
 #include "pellicle/base/error.hpp"
 #include "pellicle/base/number.hpp"
 #include "pellicle/base/parallel.hpp"
-#include "pellicle/uncertainty/detection.hpp"
+#include "pellicle/sample/emission.hpp"
 
 namespace pellicle {
 namespace {
@@ -26,12 +24,12 @@ using detail::Measurement;
 
 /// Monte Carlo is run without being asked for up to this many results.
 constexpr std::size_t kMonteCarloResults = 20;
-constexpr double kOneSided95 = 1.6448536269514722;
 
 /// What a route needs besides itself, settled once for all spots.
 struct RouteWork {
   const ThicknessRoute* route;
   std::vector<detail::OverlyingLayer> overlying;
+  std::vector<double> lengths_in_contamination;  ///< of all lines, for the contamination route "sensitivities"
 };
 
 /// A result with the findings it alone has.
@@ -65,64 +63,14 @@ void note_area(const LineArea& area, Findings& findings) {
   }
 }
 
-/// Sum of the other lines over their sensitivities, and the one length that attenuates it like its parts do.
-struct OtherLines {
-  Quantity amount;
-  std::vector<std::pair<double, double>> amount_and_length;
-};
-
-OtherLines other_lines(const Run& run, const ThicknessRoute& route, const Measurement& m) {
-  OtherLines sum;
-  double variance = 0.0;
-  for (std::size_t l = 0; l < run.lines.size(); ++l) {
-    if (l == *route.film_line || !m.lines[l]) continue;
-    const double s = run.lines[l].sensitivity ? run.lines[l].sensitivity->value : 1.0;
-    const double amount = m.lines[l]->value / s;
-    Findings already_noted;
-    const double relative = run.lines[l].sensitivity ? detail::with_assumed_sensitivity(*run.lines[l].sensitivity, already_noted).sd() / s : 0.0;
-    sum.amount.value += amount;
-    variance += std::pow(m.lines[l]->sd / s, 2) + std::pow(relative * amount, 2);
-    sum.amount_and_length.emplace_back(amount, organic_attenuation_length_nm(run.lines[l].kinetic_energy_ev));
-  }
-  sum.amount.standard_uncertainty = std::sqrt(variance);
-  return sum;
-}
-
-/// The length L for which exp(d/(L c)) equals the amount-weighted mean of exp(d/(Lᵢ c)).
-double common_length(const OtherLines& others, double reduced_depth) {
-  double sum = 0.0, reciprocal = 0.0;
-  for (const auto& [amount, length] : others.amount_and_length) {
-    sum += amount * std::exp(reduced_depth / length);
-    reciprocal += amount / length;
-  }
-  if (!(reduced_depth > 0.0)) return others.amount.value / reciprocal;
-  return reduced_depth / std::log(sum / others.amount.value);
-}
-
-/// The thickness whose sum of other lines fits: the common length depends on it, a few passes settle it.
-Quantity settle_common_length(FilmMeasurement& m, const OtherLines& others) {
-  Quantity length(common_length(others, 0.0));
-  length.standard_uncertainty = m.film_line_length_nm.sd() / m.film_line_length_nm.value * length.value;
-  const double cosine = std::cos(m.emission_deg.value * kRadianPerDegree);
-  for (int pass = 0; pass < 50; ++pass) {
-    m.substrate_line_length_nm = length;
-    const double t = thickness_from_factors(m).value_nm;
-    const double next = common_length(others, t / cosine);
-    const bool settled = std::abs(next / length.value - 1.0) < 1e-14;
-    length.standard_uncertainty = length.sd() * next / length.value;
-    length.value = next;
-    if (settled) break;
-  }
-  return length;
-}
-
 SignalFactor area_factor(const char* name, const Quantity& area, double power) {
   return {name, area, power, ContributionKind::repeatability, true};
 }
 
 /// The measurement of one spot by one route, with these areas.
 FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Measurement& m, const std::optional<Quantity>& film,
-                               const std::optional<Quantity>& substrate, const std::optional<Quantity>& contamination_nm, Findings& findings) {
+                               const std::optional<Quantity>& substrate,
+                               const std::optional<detail::ContaminationThickness>& contamination, Findings& findings) {
   const ThicknessRoute& route = *work.route;
   FilmMeasurement general;
   general.method = route.method;
@@ -136,13 +84,9 @@ FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Meas
   general.acceptance_half_angle_deg = run.geometry.acceptance_half_angle_deg;
   general.length_given_for_angle = run.length_given_for_angle && route.film_length.origin == "given";
 
-  if (film && substrate && route.film_line && route.substrate_line) {
-    // Single components only: the correlation of sums is inside their uncertainties.
-    const auto& f = run.lines[*route.film_line].components;
-    const auto& s = run.lines[*route.substrate_line].components;
-    for (const AreaCorrelation& c : run.area_correlations) {
-      const bool match = f.size() == 1 && s.size() == 1 &&
-                         ((c.first == f[0].label && c.second == s[0].label) || (c.first == s[0].label && c.second == f[0].label));
+  if (film && substrate) {
+    for (const detail::LineCorrelation& c : m.correlations) {
+      const bool match = (c.first == route.film_line && c.second == route.substrate_line) || (c.first == route.substrate_line && c.second == route.film_line);
       if (match) general.correlations.push_back({"film_area", "substrate_area", c.coefficient});
     }
   }
@@ -151,9 +95,9 @@ FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Meas
     general.factors.push_back({"tilt", Quantity(tilt_factor(run.geometry, m.emission_deg), 0.0), -1.0, ContributionKind::scale});
   }
   if (!work.overlying.empty()) {
-    const auto correction = detail::overlying_correction(work.overlying, route.method, m.emission_deg, contamination_nm);
+    const auto correction = detail::overlying_correction(work.overlying, route.method, m.emission_deg, contamination);
     if (correction) {
-      general.factors.push_back(*correction);
+      general.factors.insert(general.factors.end(), correction->begin(), correction->end());
     } else {
       add_finding(findings, {"contamination_uncorrected", Severity::warning,
                              "layers above the film attenuate its lines and no thickness is known for them; this is not corrected "
@@ -163,31 +107,35 @@ FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Meas
   return general;
 }
 
-void set_areal_densities(const ThicknessRoute& route, ThicknessResult& result) {
-  const Thickness& t = *result.thickness;
-  const double sd = result.standard_uncertainty_nm();
-  const double relative_t = t.value_nm > 0.0 ? sd / t.value_nm : 0.0;
-  // A predicted length falls as the density rises, so their product hardly depends on it; a given one does not.
-  const double density = route.film_length.predicted ? 0.0 : assumed_value("film_density_relative_sd");
-  const double relative = std::hypot(relative_t, density);
-  const auto quantity = [&](double per_nm) {
-    const double value = per_nm * t.value_nm;
-    return Quantity(value, t.value_nm > 0.0 ? relative * value : per_nm * sd);
-  };
-  result.areal_density_ug_cm2 = quantity(0.1 * route.density_g_cm3);  // 1 nm of 1 g/cm³ is 0.1 µg/cm²
-  if (route.emitter_density_per_nm3 > 0.0) result.emitting_atoms_per_nm2 = quantity(route.emitter_density_per_nm3);
+/// Part of t's derivative by ln ρ that a computed reference ratio brings: it holds the film's density.
+double density_part_nm(const Thickness& t) {
+  for (const BudgetRow& row : t.budget.rows) {
+    if (row.name == "density_film") return -row.contribution;
+  }
+  return 0.0;
 }
 
-/// Thickness with one area moved to a one-sided limit.
-double thickness_at(FilmMeasurement m, const char* name, double area) {
-  for (SignalFactor& f : m.factors) {
-    if (f.name == name) f.quantity = Quantity(area, 0.0);
-  }
-  return thickness_from_factors(m).value_nm;
+/// Thickness times density. A denser film lets electrons less far, so a predicted length falls and takes part of the
+/// density's error back; so does a computed reference ratio. A given length does not.
+void set_areal_densities(const ThicknessRoute& route, Evaluated& e) {
+  const Thickness& t = *e.result.thickness;
+  const double sd = e.result.standard_uncertainty_nm();
+  const double density_sd = assumed_value("film_density_relative_sd");
+  const double by_reference = density_part_nm(t);
+  const double by_density = by_reference + t.value_nm * (1.0 + route.film_length.density_exponent) * density_sd;
+  const double rest = std::max(sd * sd - by_reference * by_reference, 0.0);
+  const double sd_nm = std::sqrt(rest + by_density * by_density);
+  const auto quantity = [&](double per_nm) { return Quantity(per_nm * t.value_nm, per_nm * sd_nm); };
+  e.result.areal_density_ug_cm2 = quantity(0.1 * route.density_g_cm3);  // 1 nm of 1 g/cm³ is 0.1 µg/cm²
+  if (route.emitter_density_per_nm3 > 0.0) e.result.emitting_atoms_per_nm2 = quantity(route.emitter_density_per_nm3);
+  add_finding(e.findings, {"assumed", Severity::note,
+                           "the density of the film is assumed good to " + rounded_text(100.0 * density_sd, 2) +
+                               " %; only the areal densities hang on it (common practice, no source)",
+                           density_sd});
 }
 
 void bound_from_undetected(const Run& run, const RouteWork& work, const Measurement& m, const LineArea* film, const LineArea* substrate,
-                           const std::optional<Quantity>& contamination_nm, Evaluated& e) {
+                           const std::optional<detail::ContaminationThickness>& contamination, Evaluated& e) {
   const bool film_lost = film && !film->detected();
   const bool substrate_lost = substrate && !substrate->detected();
   if (film_lost && substrate_lost) {
@@ -200,36 +148,25 @@ void bound_from_undetected(const Run& run, const RouteWork& work, const Measurem
                        " line has no area, and neither area_sd nor background_counts say how weak it may be";
     return;
   }
-  const double limit = upper_bound_95(lost.value, lost.sd);
-  const std::optional<Quantity> film_area = film ? std::optional(Quantity(film_lost ? limit : film->value, film_lost ? 0.0 : film->sd)) : std::nullopt;
-  const std::optional<Quantity> substrate_area =
-      substrate ? std::optional(Quantity(substrate_lost ? limit : substrate->value, substrate_lost ? 0.0 : substrate->sd)) : std::nullopt;
-  const FilmMeasurement general = measurement_of(run, work, m, film_area, substrate_area, contamination_nm, e.findings);
-  const Thickness at_limit = thickness_from_factors(general);
-  e.result.bound = ThicknessBound{film_lost, at_limit.value_nm};
-  add_findings(e.findings, at_limit.findings);
+  const auto entering = [](const LineArea& area, bool is_lost) { return is_lost ? detail::undetected_area(area) : Quantity(area.value, area.sd); };
+  const std::optional<Quantity> film_area = film ? std::optional(entering(*film, film_lost)) : std::nullopt;
+  const std::optional<Quantity> substrate_area = substrate ? std::optional(entering(*substrate, substrate_lost)) : std::nullopt;
+  FilmMeasurement general = measurement_of(run, work, m, film_area, substrate_area, contamination, e.findings);
+  e.result.bound = ThicknessBound{film_lost, detail::bound_of_undetected(general, film_lost ? "film_area" : "substrate_area", film_lost)};
+  e.measurement = std::move(general);
+  add_findings(e.findings, emission_findings(m.emission_deg, e.measurement->length_given_for_angle));
   add_finding(e.findings, {film_lost ? "film_not_detected" : "substrate_not_detected", Severity::warning,
                            film_lost ? "the film's line is not detected: the thickness is at most the bound (95 %)"
                                      : "the substrate's line is not detected: the thickness is at least the bound (95 %)",
                            lost.value, lost.decision_level()});
 }
 
-/// A single line beyond its reference area: the area moved by 1.645 u toward it bounds the thickness.
-bool bound_from_excess(const ThicknessRoute& route, const FilmMeasurement& general, const LineArea& area, Evaluated& e) {
-  const bool film = route.method == ThicknessMethod::film_line;
-  if (!film && route.method != ThicknessMethod::substrate_line) return false;
-  const double low = area.value - kOneSided95 * area.sd;
-  if (!(low > 0.0)) return false;
-  try {
-    e.result.bound = ThicknessBound{!film, thickness_at(general, film ? "film_area" : "substrate_area", low)};
-  } catch (const Error&) {
-    return false;
-  }
-  add_finding(e.findings, {film ? "film_saturated" : "substrate_unattenuated", Severity::warning,
-                           film ? "the film's area reaches that of an infinitely thick film: the thickness is at least the bound (95 %)"
-                                : "the substrate's area reaches that of the bare substrate: the thickness is at most the bound (95 %)",
-                           area.value});
-  return true;
+void note_single_line_bound(const ThicknessBound& bound, Evaluated& e) {
+  e.result.bound = bound;
+  add_finding(e.findings, {bound.upper ? "substrate_unattenuated" : "film_saturated", Severity::warning,
+                           bound.upper ? "the substrate's area reaches that of the bare substrate: the thickness is at most the bound (95 %)"
+                                       : "the film's area reaches that of an infinitely thick film within its uncertainty: the thickness is at "
+                                         "least the bound (95 %)"});
 }
 
 void note_detection(const LineArea& area, bool film, Findings& findings) {
@@ -241,7 +178,8 @@ void note_detection(const LineArea& area, bool film, Findings& findings) {
                          area.value, *limit});
 }
 
-Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_index, const Measurement& m, const std::optional<Quantity>& contamination_nm) {
+Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_index, const Measurement& m,
+                   const std::optional<detail::ContaminationThickness>& contamination) {
   const ThicknessRoute& route = *work.route;
   Evaluated e;
   e.result.table = m.table;
@@ -268,34 +206,24 @@ Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_inde
         e.result.failure = "the contamination line is not detected";
         return e;
       }
-      bound_from_undetected(run, work, m, film, substrate, contamination_nm, e);
+      bound_from_undetected(run, work, m, film, substrate, contamination, e);
       return e;
     }
-    FilmMeasurement general = measurement_of(run, work, m, e.result.film_area, e.result.substrate_area, contamination_nm, e.findings);
+    FilmMeasurement general = measurement_of(run, work, m, e.result.film_area, e.result.substrate_area, contamination, e.findings);
     if (sum_route) {
-      const OtherLines others = other_lines(run, route, m);
-      if (!(others.amount.value > 0.0)) {
-        e.result.failure = "spot \"" + m.spot + "\" has no other line to compare the contamination with";
-        return e;
-      }
-      if (const auto& s = run.lines[*route.film_line].sensitivity) {
-        general.factors.push_back({"sensitivity", detail::with_assumed_sensitivity(*s, e.findings), -1.0, ContributionKind::scale});
-      }
-      general.factors.push_back({"other_lines", others.amount, -1.0, ContributionKind::repeatability, true});
-      general.substrate_line_length_nm = settle_common_length(general, others);
+      e.result.failure = detail::add_other_lines(run, route, work.lengths_in_contamination, m, general, e.findings);
+      if (!e.result.failure.empty()) return e;
     }
-    try {
-      e.result.thickness = thickness_from_factors(general);
-    } catch (const DomainError&) {
-      const LineArea& area = film ? *film : *substrate;
-      if (bound_from_excess(route, general, area, e)) return e;
-      throw;
+    if (const auto bound = detail::bound_of_single_line(general)) {
+      note_single_line_bound(*bound, e);
+      return e;
     }
+    e.result.thickness = thickness_from_factors(general);
     if (film) note_detection(*film, true, e.findings);
     if (substrate) note_detection(*substrate, false, e.findings);
     add_findings(e.findings, e.result.thickness->findings);
     e.result.thickness->findings.clear();
-    set_areal_densities(route, e.result);
+    set_areal_densities(route, e);
     e.measurement = std::move(general);
   } catch (const Error& failure) {
     e.result.failure = failure.what();
@@ -304,13 +232,19 @@ Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_inde
 }
 
 void add_monte_carlo(const Run& run, std::size_t stream, const ThicknessRoute& route, Evaluated& e) {
-  if (!e.result.thickness || !e.measurement) return;
+  if (!e.measurement) return;
+  if (e.result.bound) {
+    e.result.bound->at95_nm = detail::bound_by_monte_carlo(*e.measurement, e.result.bound->upper, run.uncertainty, stream);
+    return;
+  }
   e.result.monte_carlo = detail::thickness_by_monte_carlo(*e.measurement, *e.result.thickness, run.uncertainty, stream);
-  set_areal_densities(route, e.result);
+  set_areal_densities(route, e);
   const MonteCarloThickness& mc = *e.result.monte_carlo;
+  if (mc.interval_nm.low95 > 0.0) std::erase_if(e.findings, [](const Finding& f) { return f.code == "interval_reaches_zero"; });
   if (!mc.gum_agrees) {
     add_finding(e.findings, {"gum_disagrees", Severity::note,
-                             "Monte Carlo and GUM intervals differ by more than the last quoted digit; the Monte Carlo one is quoted [jcgm101]"});
+                             "the Monte Carlo and GUM intervals differ by more than half a unit of the first digit of the uncertainty; the Monte Carlo "
+                             "one is quoted [jcgm101]"});
   }
   constexpr double kAsymmetry = 1.25;
   const double up = mc.interval_nm.high95 - e.result.thickness->value_nm;
@@ -320,111 +254,25 @@ void add_monte_carlo(const Run& run, std::size_t stream, const ThicknessRoute& r
     add_finding(e.findings, {"interval_not_symmetric", Severity::note,
                              "the 95 % interval is not symmetric about the thickness; quote its two ends, not ± one number", asymmetry, kAsymmetry});
   }
+  if (mc.endless > 0) {
+    add_finding(e.findings, {"draws_endless", Severity::warning,
+                             "in some Monte Carlo draws the film is as good as infinitely thick; they count in the interval, and its quarter stands for "
+                             "the standard uncertainty",
+                             static_cast<double>(mc.endless)});
+  }
   if (mc.rejected > 0) {
-    add_finding(e.findings, {"draws_rejected", Severity::note, "some Monte Carlo draws have no finite thickness and were left out",
+    add_finding(e.findings, {"draws_rejected", Severity::warning, "some Monte Carlo draws have no thickness and were left out",
                              static_cast<double>(mc.rejected)});
   }
 }
 
-/// Part of the budget that differs between angles of one spot: what repeats, and the angle.
-double angle_to_angle_sd(const Thickness& t) {
-  double variance = t.budget.repeatability * t.budget.repeatability;
-  for (const BudgetRow& row : t.budget.rows) {
-    if (row.name == kEmissionName) variance += row.contribution * row.contribution;
+/// One spot that Monte Carlo cannot do keeps what the GUM says of it.
+void try_monte_carlo(const Run& run, std::size_t stream, const ThicknessRoute& route, Evaluated& e) {
+  try {
+    add_monte_carlo(run, stream, route, e);
+  } catch (const DomainError& failure) {
+    add_finding(e.findings, {"monte_carlo_failed", Severity::warning, std::string("no Monte Carlo interval: ") + failure.what() + "; the GUM one is quoted"});
   }
-  return std::sqrt(variance);
-}
-
-/// χ² of the thicknesses of one spot at several angles; a film that is what the model says has one thickness.
-void compare_angles(ThicknessResults& all, detail::FindingPool& pool) {
-  std::map<std::tuple<std::size_t, std::size_t, std::string>, std::vector<std::size_t>> groups;
-  bool several = false;
-  for (std::size_t i = 0; i < all.results.size(); ++i) several = several || all.results[i].emission_deg != all.results.front().emission_deg;
-  if (!several) return;
-  for (std::size_t i = 0; i < all.results.size(); ++i) {
-    const ThicknessResult& r = all.results[i];
-    if (r.thickness) groups[{r.route, r.table, r.spot}].push_back(i);
-  }
-  for (const auto& [key, members] : groups) {
-    if (members.size() < 2) continue;
-    double weights = 0.0, mean = 0.0;
-    for (const std::size_t i : members) {
-      const double sd = angle_to_angle_sd(*all.results[i].thickness);
-      if (!(sd > 0.0)) return;
-      weights += 1.0 / (sd * sd);
-      mean += all.results[i].thickness->value_nm / (sd * sd);
-    }
-    mean /= weights;
-    double chi_square = 0.0;
-    for (const std::size_t i : members) {
-      const Thickness& t = *all.results[i].thickness;
-      chi_square += std::pow((t.value_nm - mean) / angle_to_angle_sd(t), 2);
-    }
-    const double limit = boost::math::quantile(boost::math::chi_squared(static_cast<double>(members.size() - 1)), 0.95);
-    if (chi_square <= limit) continue;
-    const std::uint32_t finding = pool.add({"angles_disagree", Severity::warning,
-                                            "the angles of one spot give different thicknesses; islands, roughness, a wrong reference ratio, a swapped "
-                                            "angle convention or an angle offset would do that",
-                                            chi_square, limit});
-    for (const std::size_t i : members) all.results[i].findings.push_back(finding);
-  }
-}
-
-/// Results far from the rest, by the modified z score of Iglewicz and Hoaglin (1993): 0.6745 |x − median|/MAD > 3.5.
-std::vector<std::size_t> outliers_of(const std::vector<ThicknessResult>& results, const std::vector<std::size_t>& members) {
-  constexpr std::size_t kFewest = 5;
-  if (members.size() < kFewest) return {};
-  const auto median = [](std::vector<double> v) {
-    const auto middle = v.begin() + static_cast<std::ptrdiff_t>(v.size() / 2);
-    std::nth_element(v.begin(), middle, v.end());
-    if (v.size() % 2 == 1) return *middle;
-    return 0.5 * (*middle + *std::max_element(v.begin(), middle));
-  };
-  std::vector<double> values;
-  for (const std::size_t i : members) values.push_back(results[i].thickness->value_nm);
-  const double centre = median(values);
-  for (double& v : values) v = std::abs(v - centre);
-  const double spread = median(values);
-  if (!(spread > 0.0)) return {};
-  std::vector<std::size_t> outliers;
-  for (std::size_t k = 0; k < members.size(); ++k) {
-    if (0.6745 * values[k] / spread > 3.5) outliers.push_back(members[k]);
-  }
-  return outliers;
-}
-
-ThicknessSummary summarise(const std::vector<ThicknessResult>& results, std::size_t route) {
-  ThicknessSummary summary;
-  summary.route = route;
-  std::vector<std::size_t> members;
-  double sum = 0.0, repeatability_squares = 0.0, scale_sum = 0.0;
-  for (std::size_t i = 0; i < results.size(); ++i) {
-    const ThicknessResult& r = results[i];
-    if (r.route != route) continue;
-    if (r.bound) ++summary.bounds;
-    if (!r.thickness && !r.bound) ++summary.failed;
-    if (!r.thickness) continue;
-    members.push_back(i);
-    sum += r.thickness->value_nm;
-    repeatability_squares += r.thickness->budget.repeatability * r.thickness->budget.repeatability;
-    scale_sum += r.thickness->budget.scale;
-    summary.scale_stated = summary.scale_stated && r.thickness->scale_stated;
-  }
-  summary.count = members.size();
-  if (members.empty()) return summary;
-  const double n = static_cast<double>(members.size());
-  summary.mean_nm = sum / n;
-  // A common error moves every result the same way, so it is averaged over results but not divided by √n.
-  summary.scale_nm = scale_sum / n;
-  summary.repeatability_of_mean_nm = std::sqrt(repeatability_squares) / n;
-  summary.outliers = outliers_of(results, members);
-  if (members.size() < 2) return summary;
-  double squares = 0.0;
-  for (const std::size_t i : members) squares += std::pow(results[i].thickness->value_nm - summary.mean_nm, 2);
-  summary.standard_deviation_nm = std::sqrt(squares / (n - 1.0));
-  // What the spots really do counts more than what counting statistics promises.
-  summary.repeatability_of_mean_nm = std::max(summary.repeatability_of_mean_nm, *summary.standard_deviation_nm / std::sqrt(n));
-  return summary;
 }
 
 }  // namespace
@@ -448,10 +296,12 @@ ThicknessResults run_thickness(const Run& run, const Progress& progress) {
   all.routes = thickness_routes(run);
   const std::vector<Measurement> measurements = detail::collect_measurements(run);
   std::vector<RouteWork> work;
-  std::optional<std::size_t> contamination;
+  std::optional<std::size_t> contamination_route;
   for (std::size_t r = 0; r < all.routes.size(); ++r) {
-    work.push_back({&all.routes[r], detail::overlying_layers(run, all.routes[r])});
-    if (all.routes[r].contamination) contamination = r;
+    const ThicknessRoute& route = all.routes[r];
+    work.push_back({&route, detail::overlying_layers(run, route), {}});
+    if (route.contamination) contamination_route = r;
+    if (route.contamination == ContaminationRoute::sensitivities) work.back().lengths_in_contamination = detail::lengths_in_contamination(run, route);
   }
   const std::size_t count = measurements.size() * work.size();
   const IntervalMethod method = run.uncertainty.method;
@@ -469,12 +319,13 @@ ThicknessResults run_thickness(const Run& run, const Progress& progress) {
     for_each_block(size, [&](std::size_t low, std::size_t high) {
       for (std::size_t i = low; i < high; ++i) {
         const Measurement& m = measurements[begin + i];
-        std::optional<Quantity> contamination_nm;
+        std::optional<detail::ContaminationThickness> contamination;
         for (std::size_t r = 0; r < work.size(); ++r) {
           Evaluated& e = chunk[i * work.size() + r];
-          e = evaluate(run, work[r], r, m, contamination_nm);
-          if (contamination == r && e.result.thickness) {
-            contamination_nm = Quantity(e.result.thickness->value_nm, e.result.thickness->standard_uncertainty_nm);
+          e = evaluate(run, work[r], r, m, contamination);
+          if (contamination_route == r && e.result.thickness) {
+            const Thickness& t = *e.result.thickness;
+            contamination = {t.value_nm, t.budget.repeatability, t.budget.scale};
           }
         }
       }
@@ -482,7 +333,7 @@ ThicknessResults run_thickness(const Run& run, const Progress& progress) {
     for (std::size_t i = 0; i < chunk.size(); ++i) {
       Evaluated& e = chunk[i];
       const ThicknessRoute& route = all.routes[e.result.route];
-      if (draw) add_monte_carlo(run, begin * work.size() + i, route, e);
+      if (draw) try_monte_carlo(run, begin * work.size() + i, route, e);
       for (const Findings* findings : {&std::as_const(e.findings), &route.findings}) {
         for (const Finding& f : *findings) {
           const std::uint32_t index = pool.add(f);
@@ -494,8 +345,8 @@ ThicknessResults run_thickness(const Run& run, const Progress& progress) {
     }
     if (progress && !progress(all.results.size(), count)) throw ConvergenceError("thickness", "stopped before all results were done");
   }
-  compare_angles(all, pool);
-  for (std::size_t r = 0; r < all.routes.size(); ++r) all.summaries.push_back(summarise(all.results, r));
+  detail::compare_angles(all, pool);
+  for (std::size_t r = 0; r < all.routes.size(); ++r) all.summaries.push_back(detail::summarise(all, r, pool));
   return all;
 }
 

@@ -2,7 +2,10 @@
 
 #include <algorithm>
 #include <array>
+#include <atomic>
+#include <cmath>
 #include <limits>
+#include <stdexcept>
 
 #include "pellicle/uncertainty/monte_carlo.hpp"
 
@@ -17,10 +20,12 @@ Distribution area_input(const Quantity& q) { return Distribution::truncated_norm
 /// Positive quantities keep their sign under any uncertainty.
 Distribution positive_input(const Quantity& q) { return Distribution::lognormal(q.value, q.sd()); }
 
-}  // namespace
+struct Drawn {
+  MonteCarlo result;
+  std::size_t endless = 0;
+};
 
-MonteCarloThickness thickness_by_monte_carlo(const FilmMeasurement& m, const Thickness& gum, const UncertaintyOptions& options,
-                                             std::uint64_t stream) {
+Drawn draw(const FilmMeasurement& m, const UncertaintyOptions& options, std::uint64_t stream, double coverage_probability) {
   std::vector<ModelInput> inputs;
   const auto add = [&](const std::string& name, const Distribution& distribution) { inputs.push_back({name, distribution}); };
   for (const SignalFactor& f : m.factors) add(f.name, f.is_area ? area_input(f.quantity) : positive_input(f.quantity));
@@ -28,6 +33,7 @@ MonteCarloThickness thickness_by_monte_carlo(const FilmMeasurement& m, const Thi
   if (m.substrate_line_length_nm) add(kSubstrateLengthName, positive_input(*m.substrate_line_length_nm));
   // An angle drawn across the normal is the same angle on its other side; cos does not see the sign.
   add(kEmissionName, Distribution::normal(m.emission_deg.value, m.emission_deg.sd()));
+  if (inputs.size() > kMostInputs) throw std::logic_error("a measurement with more inputs than draws are made for");
 
   std::vector<Correlation> correlations;
   const auto position = [&](const std::string& name) {
@@ -36,22 +42,51 @@ MonteCarloThickness thickness_by_monte_carlo(const FilmMeasurement& m, const Thi
   for (const NamedCorrelation& c : m.correlations) correlations.push_back({position(c.first), position(c.second), c.coefficient});
 
   const double cone = m.acceptance_half_angle_deg == 0.0 ? 1.0 : cone_factor(m);
+  // Longer than any thickness with an end, so that such draws stand at the end of the order.
+  const double endless_nm = 1e6 * m.film_line_length_nm.value;
+  std::atomic<std::size_t> endless = 0;
   const BlockModel model = [&](std::span<const std::span<const double>> columns, std::span<double> out) {
-    std::array<double, kMostInputs> draw;
-    const std::span<const double> values(draw.data(), columns.size());
+    std::array<double, kMostInputs> values_of_draw;
+    const std::span<const double> values(values_of_draw.data(), columns.size());
+    std::size_t endless_here = 0;
     for (std::size_t i = 0; i < out.size(); ++i) {
-      for (std::size_t k = 0; k < columns.size(); ++k) draw[k] = columns[k][i];
+      for (std::size_t k = 0; k < columns.size(); ++k) values_of_draw[k] = columns[k][i];
       out[i] = thickness_of_draw(m, values, cone).value_or(std::numeric_limits<double>::quiet_NaN());
+      if (std::isinf(out[i])) {
+        out[i] = endless_nm;
+        ++endless_here;
+      }
     }
+    endless += endless_here;
   };
   MonteCarloOptions settings;
   settings.draws = options.draws;
   settings.adaptive = options.method == IntervalMethod::adaptive_monte_carlo;
+  settings.coverage_probability = coverage_probability;
   settings.seed = options.seed + 0x9E3779B97F4A7C15ULL * stream;  // every result has draws of its own
-  const MonteCarlo drawn = monte_carlo(model, inputs, correlations, settings);
+  return {monte_carlo(model, inputs, correlations, settings), endless};
+}
+
+}  // namespace
+
+MonteCarloThickness thickness_by_monte_carlo(const FilmMeasurement& m, const Thickness& gum, const UncertaintyOptions& options,
+                                             std::uint64_t stream) {
+  const Drawn drawn = draw(m, options, stream, 0.95);
+  const MonteCarlo& mc = drawn.result;
   const bool agrees = gum.standard_uncertainty_nm > 0.0 &&
-                      compare_intervals({gum.interval_nm.low95, gum.interval_nm.high95}, drawn.symmetric, gum.standard_uncertainty_nm, 1).agree;
-  return {drawn.mean, drawn.sd, {drawn.symmetric.low, drawn.symmetric.high}, drawn.draws, drawn.rejected, agrees};
+                      compare_intervals({gum.interval_nm.low95, gum.interval_nm.high95}, mc.symmetric, gum.standard_uncertainty_nm, 1).agree;
+  MonteCarloThickness result{mc.mean, mc.sd, {mc.symmetric.low, mc.symmetric.high}, mc.draws, mc.rejected, drawn.endless, agrees};
+  if (drawn.endless > 0) {
+    result.mean_nm = mc.median;
+    result.standard_uncertainty_nm = 0.25 * (mc.symmetric.high - mc.symmetric.low);
+  }
+  return result;
+}
+
+double bound_by_monte_carlo(const FilmMeasurement& m, bool upper, const UncertaintyOptions& options, std::uint64_t stream) {
+  // 5 % lie beyond either end of a 90 % interval.
+  const MonteCarlo mc = draw(m, options, stream, 0.90).result;
+  return upper ? mc.symmetric.high : mc.symmetric.low;
 }
 
 }  // namespace pellicle::detail

@@ -127,6 +127,7 @@ std::string sensitivity_words(const Run& run) {
   std::string text = std::string(sensitivity_kind_name(run.sensitivity_kind)) + " sensitivities";
   if (run.sensitivity_includes_transmission) text += ", transmission included";
   if (run.sensitivity_includes_escape_depth) text += ", escape depth included";
+  if (run.sensitivity_includes_asymmetry) text += ", asymmetry included";
   return text;
 }
 

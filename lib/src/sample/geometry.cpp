@@ -1,5 +1,6 @@
 #include "pellicle/sample/geometry.hpp"
 
+#include <algorithm>
 #include <array>
 #include <cmath>
 #include <string>
@@ -66,9 +67,21 @@ double emission_deg_of_tilt(const Geometry& geometry, double tilt_deg) {
     throw InputError("tilt_deg", "a tilt needs the geometry that maps it to an emission angle",
                      "state tilt_direction under [instrument], or give emission_deg");
   }
-  const double emission = std::abs(geometry.emission_at_zero_tilt_deg + tilt_deg);
-  check_emission_deg(emission);
-  return emission;
+  const double at_zero = geometry.emission_at_zero_tilt_deg;
+  if (*geometry.tilt_direction == TiltDirection::across) {
+    // The tilt turns about an axis at right angles to the plane in which the emission at zero tilt lies.
+    const double cosine = std::cos(at_zero * kRadianPerDegree) * std::cos(tilt_deg * kRadianPerDegree);
+    const double emission = at_zero == 0.0 ? std::abs(tilt_deg) : std::acos(std::clamp(cosine, -1.0, 1.0)) / kRadianPerDegree;
+    check_emission_deg(emission);
+    return emission;
+  }
+  const double emission = at_zero + tilt_deg;
+  if (emission < 0.0 && geometry.signal_area != SignalArea::analyser) {
+    throw InputError("tilt_deg", "a tilt of " + number_text(tilt_deg) + " deg turns the normal to the other side of the analyser, where the X-ray spot differs",
+                     "count tilts in the direction named by tilt_direction");
+  }
+  check_emission_deg(std::abs(emission));
+  return std::abs(emission);
 }
 
 double incidence_deg(const Geometry& geometry, double emission_deg) {

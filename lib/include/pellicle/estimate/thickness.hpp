@@ -120,8 +120,9 @@ inline constexpr const char* kEmissionName = "emission_deg";
 /// @cite hill1976 jcgm100
 [[nodiscard]] Thickness thickness_from_factors(const FilmMeasurement& measurement);
 
-/// t of one draw of all inputs, without uncertainty; nothing where there is no finite answer. In the order of
-/// measurement_inputs(): factors, film line length, substrate line length (if any), emission angle.
+/// t of one draw of all inputs, without uncertainty; nothing where there is no answer. Order of the inputs: factors,
+/// film line length, substrate line length (if any), emission angle. A single line beyond its reference has its limit:
+/// 0 for the substrate's line, +infinity for the film's.
 /// @param cone_factor t over what the axis alone gives, from cone_factor()
 [[nodiscard]] std::optional<double> thickness_of_draw(const FilmMeasurement& measurement, std::span<const double> inputs,
                                                       double cone_factor) noexcept;

@@ -93,7 +93,8 @@ struct Run {
   std::vector<Line> lines;
   SensitivityKind sensitivity_kind = SensitivityKind::atomic;
   bool sensitivity_includes_transmission = false;
-  bool sensitivity_includes_escape_depth = false;
+  bool sensitivity_includes_escape_depth = false;  ///< that of an average matrix, ∝ E^0.75
+  bool sensitivity_includes_asymmetry = false;
   std::vector<ReferenceRatio> references;
   std::optional<Contamination> contamination;
   AreaUnit area_unit = AreaUnit::arbitrary;

@@ -22,6 +22,8 @@ struct LengthUsed {
   std::string material;         ///< id of the material that attenuates
   double energy_ev = 0.0;       ///< kinetic energy of the electrons
   bool predicted = false;
+  std::string formula;          ///< with what it shares its error: "TPP-2M", "S1", "S3", "set …"; empty: it stands alone
+  double density_exponent = 0.0;  ///< d ln L/d ln ρ of a predicted length; 0 for any other
   Findings findings;
 };
 
@@ -33,6 +35,7 @@ struct ThicknessRoute {
   std::optional<ContaminationRoute> contamination;  ///< set when it gives the contamination layer
   std::vector<SignalFactor> factors;           ///< of r, besides the areas
   std::vector<NamedCorrelation> correlations;
+  std::vector<std::pair<std::string, std::string>> formulas;  ///< inputs that come from a formula or set, and which
   std::optional<Quantity> reference_ratio;     ///< R₀, or the reference area of a single line
   std::string reference_origin;                ///< "given", "reference areas", "sensitivities", "table:…", "computed"
   std::vector<std::string> reference_applied;  ///< what a computed ratio is made of
@@ -55,8 +58,11 @@ struct MonteCarloThickness {
   double standard_uncertainty_nm = 0.0;
   Interval interval_nm;             ///< probabilistically symmetric, 95 %
   std::size_t draws = 0;
-  std::size_t rejected = 0;         ///< draws without a finite thickness
-  bool gum_agrees = false;          ///< JCGM 101 clause 8
+  std::size_t rejected = 0;         ///< draws without a thickness
+  /// Draws of a single line with no end to the thickness, since the film is as good as infinitely thick. They count in
+  /// the interval; mean and standard uncertainty do not exist then, and hold the median and a quarter of the interval.
+  std::size_t endless = 0;
+  bool gum_agrees = false;          ///< JCGM 101 clause 8: to half a unit of the first digit of the uncertainty
 };
 
 /// One spot at one angle by one route.
@@ -80,18 +86,20 @@ struct ThicknessResult {
   [[nodiscard]] Interval interval_nm() const;
 };
 
-/// Over all spots that gave a thickness by one route.
+/// Over all spots that gave a thickness by one route. The angles of a spot are averaged first.
 struct ThicknessSummary {
   std::size_t route = 0;
-  std::size_t count = 0;                 ///< thicknesses
+  std::size_t count = 0;                 ///< spots with a thickness, over which the mean is taken
+  std::size_t thicknesses = 0;           ///< results with a thickness: spots times angles
   std::size_t bounds = 0;
   std::size_t failed = 0;
   double mean_nm = 0.0;
-  std::optional<double> standard_deviation_nm;  ///< between results; nothing for fewer than two
-  double repeatability_of_mean_nm = 0.0; ///< falls with the number of results
-  double scale_nm = 0.0;                 ///< common to all results, does not average
+  std::optional<double> standard_deviation_nm;  ///< between spots; nothing for fewer than two
+  double repeatability_of_mean_nm = 0.0; ///< falls with the number of spots
+  double scale_nm = 0.0;                 ///< common to all spots, does not average
   bool scale_stated = true;
-  std::vector<std::size_t> outliers;     ///< positions in ThicknessResults::results
+  std::vector<std::size_t> outliers;     ///< positions in ThicknessResults::results of spots far from the rest; they
+                                         ///< are in the mean
 };
 
 struct ThicknessResults {

@@ -7,7 +7,7 @@ namespace pellicle {
 
 /// | kind           | area of a thick solid                                    | common name                        |
 /// |----------------|----------------------------------------------------------|------------------------------------|
-/// | atomic         | S · N · λ (S ∝ σ W)                                      | per-atom factor                    |
+/// | atomic         | S · N · λ · W (S ∝ σ)                                    | per-atom factor                    |
 /// | elemental      | S · (N λ)/(N λ of the pure element)                      | pure-element factor, ISO 18118     |
 /// | average_matrix | S · X · (N_tot λ)/(N_tot λ of an average matrix)         | average-matrix factor, ISO 18118   |
 ///

@@ -147,7 +147,9 @@ FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Meas
     }
   }
   const bool single = route.method == ThicknessMethod::film_line || route.method == ThicknessMethod::substrate_line;
-  if (single && run.geometry.signal_area != SignalArea::analyser) {
+  // A reference without an angle of its own was measured like the areas: there is nothing to carry over.
+  const std::optional<std::size_t>& own_line = route.film_line ? route.film_line : route.substrate_line;
+  if (single && run.geometry.signal_area != SignalArea::analyser && run.lines[*own_line].reference_emission_deg) {
     general.factors.push_back({"tilt", Quantity(tilt_factor(run.geometry, m.emission_deg), 0.0), -1.0, ContributionKind::scale});
   }
   if (!work.overlying.empty()) {

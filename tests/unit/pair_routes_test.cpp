@@ -314,6 +314,19 @@ TEST_CASE("correlated areas of film and substrate share their error in the ratio
     text.data = "[[data.correlation]]\nlines = [\"metal\", \"oxide\"]\nr = " + std::to_string(c) + "\n";
     CHECK(close_to(area_part(plain), slope * std::sqrt(9e-4 + 4e-4 - 2.0 * c * 6e-4), rel(1e-9)));
   }
+  // The same where the film is a sum: covariance −0.4·12·10 of the second component alone, weight 0.5.
+  text.film_line = "components = [\"a\", { label = \"b\", weight = 0.5 }]";
+  text.data = "[[data.correlation]]\nlines = [\"b\", \"metal\"]\nr = -0.4\n";
+  const double film = std::hypot(30.0, 6.0) / 1100.0, covariance = -0.4 * 0.5 * 12.0 * 10.0 / (1100.0 * 500.0);
+  CHECK(close_to(area_part("line,area,area_sd\na,1000,30\nb,200,12\nmetal,500,10\n"),
+                 slope * std::sqrt(film * film + 4e-4 - 2.0 * covariance), rel(1e-9)));
+  // A component that stands in both lines is one measurement: 300 of it in each, so that they share 18².
+  text.data.clear();
+  text.film_line = "components = [\"a\", \"shared\"]";
+  text.substrate_line = "components = [\"b\", \"shared\"]";
+  const double f = std::hypot(24.0, 18.0) / 1100.0, s = std::hypot(4.0, 18.0) / 500.0;
+  CHECK(close_to(area_part("line,area,area_sd\na,800,24\nshared,300,18\nb,200,4\n"),
+                 slope * std::sqrt(f * f + s * s - 2.0 * 18.0 * 18.0 / (1100.0 * 500.0)), rel(1e-9)));
 }
 
 TEST_CASE("a doublet against half of one is refused in the run file with the factor between them") {

@@ -42,6 +42,12 @@ double energy_of(const char* level) { return kinetic_energy_ev(core_level(level)
 double imfp(const char* material, double energy_ev) {
   return *predict_imfp(catalogue_material(material), energy_ev, ImfpModel::tpp2m).value_nm;
 }
+/// 1 + (β/2)(3/2 sin²γ − 1) [reilman1976].
+double angular_weight(const char* level, double source_analyser_deg) {
+  const double sine = test::sine_of_deg(source_analyser_deg);
+  return 1.0 + 0.5 * *asymmetry_parameter(core_level(level), photon_source("Al Ka")).value * (1.5 * sine * sine - 1.0);
+}
+
 double atoms(const char* material, const char* element) {
   return atom_density_per_nm3(catalogue_material(material), element);
 }
@@ -231,6 +237,91 @@ TEST_CASE("carbon in atomic per cent has the thickness of the recalled formula")
   CHECK(contains(error_of<InputError>([&] { (void)thicknesses(text.toml(), table({{"C", 30.0}, {"Si", 70.0}})); }).fact(), "atomic-percent"));
 }
 
+TEST_CASE("carbon against all other lines is found from areas of every kind of sensitivity") {
+  // Areas of 0.8 nm of hydrocarbon on silica so thick that no silicon shines through, 30 degrees:
+  //   C 1s:       K_C N_C λ_C(carbon) [1 − exp(−d/(L_C cosθ))]
+  //   Si 2p, O 1s: K N λ(silica at its energy) exp(−d/(L cosθ)),  L at its own energy
+  // K = S T W for per-atom factors; average-matrix ones have E^0.75 of the matrix below. Pure-element factors would need
+  // solid oxygen.
+  const double d = 0.8, c = cosine_of_deg(30.0);
+  struct Emitter {
+    const char *label, *level, *from, *material, *element;
+    double sensitivity, transmission;
+  };
+  const std::array<Emitter, 3> emitters = {Emitter{"C", "C 1s", "carbon", "hydrocarbon", "C", 0.31, 1.0},
+                                           Emitter{"O", "O 1s", "film", "SiO2", "O", 0.71, 0.8},
+                                           Emitter{"Si", "Si 2p", "film", "SiO2", "Si", 0.34, 1.15}};
+  for (const std::string kind : {"atomic", "average-matrix"}) {
+    for (const bool raw : {false, true}) {
+      for (const bool holds_transmission : {false, true}) {
+        for (const bool holds_depth : {false, true}) {
+          if ((holds_transmission && !raw) || (holds_depth && kind != "atomic")) continue;
+          Text text;
+          text.instrument = "emission_deg = 30\nsource_analyser_angle_deg = 90\n";
+          text.top = "sensitivity_kind = \"" + kind + "\"\nsensitivity_includes = [" + (holds_transmission ? "\"transmission\"" : "") +
+                     (holds_transmission && holds_depth ? "," : "") + (holds_depth ? "\"escape-depth\"" : "") + "]\n";
+          text.contaminant = "\n";
+          text.data = raw ? "transmission = \"raw\"\n" : "";
+          text.rest = "[[reference]]\nfilm = \"Si\"\nsubstrate = \"bulk\"\nratio = 0.8\n[contamination]\nlayer = \"carbon\"\nline = \"C\"\nroute = \"sensitivities\"\n";
+          Areas areas;
+          for (const Emitter& e : emitters) {
+            text.lines += line(e.label, e.level, e.from, "sensitivity = " + number(e.sensitivity) + "\ntransmission = " + number(e.transmission));
+            const double energy = energy_of(e.level);
+            double area = 1e4 * e.sensitivity * atoms(e.material, e.element);
+            if (!holds_depth) area *= imfp(e.material, energy);
+            if (raw && !holds_transmission) area *= e.transmission;
+            if (kind == "atomic") area *= angular_weight(e.level, 90.0);
+            if (kind == "average-matrix") area /= std::pow(energy, 0.75) / 100.0;
+            const double attenuation = std::exp(-d / (organic(energy) * c));
+            area *= std::string(e.from) == "carbon" ? 1.0 - attenuation : attenuation;
+            areas.emplace_back(e.label, area);
+          }
+          text.lines += line("bulk", "Si 2p", "substrate", "sensitivity = 0.34\ntransmission = 1.15\nlength_nm = { film = 3.0 }");
+          areas.emplace_back("bulk", 1e-9);
+          const ThicknessResults all = thicknesses(text.toml(), table(areas));
+          INFO(kind << ", raw: " << raw << ", S holds T: " << holds_transmission << ", S holds λ: " << holds_depth);
+          CHECK(close_to(thickness_at(all, 0).value_nm, d, rel(1e-9)));
+        }
+      }
+    }
+  }
+}
+
+TEST_CASE("carbon in atomic per cent against all other lines needs no sensitivities") {
+  // Percentages as a homogeneous solid would give them: N λ over the IMFP of an average matrix, E^0.75, attenuated.
+  const double d = 1.1, c = cosine_of_deg(45.0);
+  const auto share = [&](const char* material, const char* element, const char* level) {
+    const double energy = energy_of(level), loss = std::exp(-d / (organic(energy) * c));
+    return atoms(material, element) * imfp(material, energy) / std::pow(energy, 0.75) * (std::string(element) == "C" ? 1.0 - loss : loss);
+  };
+  const double carbon = share("hydrocarbon", "C", "C 1s"), oxygen = share("SiO2", "O", "O 1s"), silicon = share("SiO2", "Si", "Si 2p");
+  const double percent = 100.0 / (carbon + oxygen + silicon);
+  Text text;
+  text.contaminant = "\n";
+  text.lines = line("C", "C 1s", "carbon", "") + line("O", "O 1s", "film", "reference_area = 200") + line("Si", "Si 2p", "film", "reference_area = 200");
+  text.rest = "[contamination]\nlayer = \"carbon\"\nline = \"C\"\nroute = \"sensitivities\"\n";
+  text.options = "method = \"film-line\"\n";
+  text.data = "area_unit = \"atomic-percent\"\n";
+  const Areas areas = {{"C", carbon * percent}, {"O", oxygen * percent}, {"Si", silicon * percent}};
+  CHECK(close_to(thickness_at(thicknesses(text.toml(), table(areas)), 0).value_nm, d, rel(1e-9)));
+  // Another line of the contamination itself does not come from below and is no part of the sum.
+  Text more = text;
+  more.lines += line("C=O", "C 1s", "carbon", "reference_area = 200");
+  Areas with_more = areas;
+  with_more.emplace_back("C=O", 30.0);
+  CHECK(close_to(thickness_at(thicknesses(more.toml(), table(with_more)), 0).value_nm, d, rel(1e-9)));
+  // A line that the table leaves out would make the carbon look thicker: no answer, and the reason.
+  const ThicknessResults gap = thicknesses(text.toml(), table({areas[0], areas[2]}));
+  CHECK(contains(gap.results[0].failure, "no area of line \"O\""));
+}
+
+TEST_CASE("sensitivities are not asked of areas that hold them") {
+  Text text;
+  text.lines = line("oxide", "Si 2p", "film", "sensitivity = 0.3") + line("metal", "Si 2p", "substrate", "sensitivity = 0.3");
+  text.data = "area_unit = \"atomic-percent\"\n";
+  CHECK(contains(error_of<InputError>([&] { (void)thicknesses(text.toml(), table({{"oxide", 20.0}, {"metal", 10.0}})); }).fact(), "hold the sensitivities"));
+}
+
 TEST_CASE("contamination found by any route is taken out of lines of different energy") {
   // Hafnia of 1.7 nm under 0.6 nm of hydrocarbon, 30 degrees. Lengths in hafnia 1.8 (Hf 4f) and 0.9 nm (Si 2p).
   const double d = 0.6, t = 1.7, c = cosine_of_deg(30.0), ratio = 4.0;
@@ -263,6 +354,19 @@ TEST_CASE("contamination found by any route is taken out of lines of different e
   // What the percentages must be for the formula to give d; film and substrate share the rest as their areas do.
   const double percent = 100.0 * (1.0 - loss("C 1s"));
   check(thicknesses(text.toml(), table({{"Hf", film * 1e-3}, {"Si", substrate * 1e-3}, {"C", percent}})), 1, "atomic per cent");
+  // Against the sum of the others, per atom S λ W: the carbon that belongs to d above what film and substrate show.
+  text.data.clear();
+  text.instrument += "source_analyser_angle_deg = 90\n";
+  text.lines = line("Hf", "Hf 4f", "film", "sensitivity = 2.6\nlength_nm = { film = 1.8 }") +
+               line("Si", "Si 2p", "substrate", "sensitivity = 0.34\nlength_nm = { film = 0.9 }") + line("C", "C 1s", "carbon", "sensitivity = 0.31");
+  text.rest = reference + "[contamination]\nlayer = \"carbon\"\nline = \"C\"\nroute = \"sensitivities\"\n";
+  const auto response = [&](double s, const char* material, const char* level) {
+    return s * imfp(material, energy_of(level)) * angular_weight(level, 90.0);
+  };
+  const double shown = film / loss("Hf 4f") / response(2.6, "hfo2", "Hf 4f") + substrate / loss("Si 2p") / response(0.34, "Si", "Si 2p");
+  const double area = response(0.31, "hydrocarbon", "C 1s") * atoms("hydrocarbon", "C") * (1.0 - loss("C 1s")) * shown /
+                      (atoms("hfo2", "Hf") + atoms("hfo2", "O"));
+  check(thicknesses(text.toml(), table({{"Hf", film}, {"Si", substrate}, {"C", area}})), 1, "sensitivities");
 }
 
 TEST_CASE("a line of the film alone is corrected for contamination by its own attenuation") {

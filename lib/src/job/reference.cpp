@@ -173,6 +173,10 @@ void correlate_lengths(ThicknessRoute& route) {
 }
 
 void add_computed_ratio(const Run& run, const Line& film, const Line& substrate, bool from_sensitivity, ThicknessRoute& route) {
+  if (from_sensitivity && run.area_unit == AreaUnit::atomic_percent) {
+    throw InputError(run.place, "the areas are in atomic-percent, which hold the sensitivities already",
+                     "leave sensitivity out and give a [[reference]] ratio, for example \"computed\"");
+  }
   std::vector<std::string> applied;
   const bool shared = same_level(film, substrate);
   std::vector<SignalFactor> film_signal = thick_signal(run, film, from_sensitivity, shared, applied, route.findings);
@@ -311,6 +315,21 @@ std::vector<SignalFactor> thick_signal(const Run& run, const Line& line, bool fr
     applied.emplace_back("main-peak fraction");
   }
   return factors;
+}
+
+Quantity response_per_atom(const Run& run, const Line& line, std::vector<std::string>& applied, Findings& findings) {
+  std::vector<SignalFactor> factors;
+  if (run.area_unit == AreaUnit::atomic_percent) {
+    factors = {imfp_factor(run, line), {"average_matrix", Quantity(std::pow(line.kinetic_energy_ev, -kAverageMatrixExponent), 0.0)}};
+    applied = {"IMFP over that of an average matrix (IMFP ∝ E^0.75)"};
+  } else {
+    factors = thick_signal(run, line, true, false, applied, findings);
+  }
+  std::erase_if(factors, [](const SignalFactor& f) { return f.name.starts_with("density_"); });
+  for (SignalFactor& f : factors) {
+    if (f.name.starts_with("imfp_")) f.quantity.standard_uncertainty = 0.0;
+  }
+  return product(factors);
 }
 
 void add_reference_ratio(const Run& run, const ReferenceRatio* reference, const Line& film, const Line& substrate, ThicknessRoute& route) {

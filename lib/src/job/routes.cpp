@@ -196,24 +196,20 @@ ThicknessRoute contamination_route_of(const Run& run) {
     }
   }
   route.reference_origin = "sensitivities";
-  // Atoms times IMFP of the contamination over those of the solid just below it.
+  // Atoms of the contamination over those of the solid just below it; IMFPs and the rest stand in the response per atom
+  // of each line, at its own energy.
   const std::string below = run.sample.layers.size() > 1 ? run.sample.layers[1].name : std::string(kSubstrate);
   const Material& solid = run.sample.material(below);
-  const Material& film = run.sample.material(c.layer);
   double atoms_below = 0.0;
   for (const FormulaTerm& term : solid.formula.terms()) {
     if (term.element->z > 1) atoms_below += atom_density_per_nm3(solid, term.element->symbol);
   }
-  const auto imfp = [&](const Material& material) {
-    ModelValue value = predict_imfp(material, line.kinetic_energy_ev, ImfpModel::tpp2m);
-    if (!value.value_nm) value = predict_imfp(material, line.kinetic_energy_ev, ImfpModel::s1);
-    if (!value.value_nm) throw DomainError(material.id, value.refusal);
-    return *value.value_nm;
-  };
-  const double ratio = atom_density_per_nm3(film, "C") * imfp(film) / (atoms_below * imfp(solid));
-  const double density = assumed_value("film_density_relative_sd");
-  route.reference_ratio = Quantity(ratio, ratio * std::hypot(density, density));
-  route.reference_applied = {"atom densities", "IMFP (Q = 1)"};
+  const double ratio = atom_density_per_nm3(run.sample.material(c.layer), "C") / atoms_below;
+  const double film_density = assumed_value("film_density_relative_sd");
+  const double density_below = assumed_value(below == kSubstrate ? "bulk_density_relative_sd" : "film_density_relative_sd");
+  route.reference_ratio = Quantity(ratio, ratio * std::hypot(film_density, density_below, detail::kImfpRatioRelativeSd));
+  (void)detail::response_per_atom(run, line, route.reference_applied, route.findings);
+  if (run.area_unit == AreaUnit::atomic_percent) route.reference_applied.insert(route.reference_applied.begin(), "atom density");
   route.factors.push_back({"reference_ratio", *route.reference_ratio, -1.0, ContributionKind::scale});
   return route;
 }

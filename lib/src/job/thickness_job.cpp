@@ -8,6 +8,7 @@
 #include <boost/math/distributions/chi_squared.hpp>
 
 #include "job/finding_pool.hpp"
+#include "job/length_choice.hpp"
 #include "job/measurements.hpp"
 #include "job/overlying.hpp"
 #include "job/reference.hpp"
@@ -27,11 +28,22 @@ using detail::Measurement;
 /// Monte Carlo is run without being asked for up to this many results.
 constexpr std::size_t kMonteCarloResults = 20;
 constexpr double kOneSided95 = 1.6448536269514722;
+/// Two lengths predicted by one formula for one material share nearly all of their error.
+constexpr double kSameFormulaCorrelation = 0.9;
+
+/// A line from below the contamination, as its sum needs it.
+struct LineBelow {
+  std::size_t line = 0;
+  Quantity response;       ///< per atom, unit common to all lines
+  double length_nm = 0.0;  ///< attenuation length in the contamination
+};
 
 /// What a route needs besides itself, settled once for all spots.
 struct RouteWork {
   const ThicknessRoute* route;
   std::vector<detail::OverlyingLayer> overlying;
+  std::vector<LineBelow> below;        ///< of the route "sensitivities"
+  Quantity response = 1.0;             ///< of its contamination line, per atom
 };
 
 /// A result with the findings it alone has.
@@ -65,24 +77,42 @@ void note_area(const LineArea& area, Findings& findings) {
   }
 }
 
-/// Sum of the other lines over their sensitivities, and the one length that attenuates it like its parts do.
+RouteWork work_of(const Run& run, const ThicknessRoute& route) {
+  RouteWork work{&route, detail::overlying_layers(run, route), {}, 1.0};
+  if (route.contamination != ContaminationRoute::sensitivities) return work;
+  std::vector<std::string> applied;
+  Findings noted_by_the_route;
+  for (std::size_t l = 0; l < run.lines.size(); ++l) {
+    const Line& line = run.lines[l];
+    const Quantity response = detail::response_per_atom(run, line, applied, noted_by_the_route);
+    if (l == *route.film_line) {
+      work.response = response;
+    } else if (line.from != route.layer) {
+      work.below.push_back({l, response, detail::choose_length(run, line, route.layer, line.kinetic_energy_ev).length_nm.value});
+    }
+  }
+  return work;
+}
+
+/// Sum of the lines from below, each over its response: atoms per volume, attenuated.
 struct OtherLines {
   Quantity amount;
   std::vector<std::pair<double, double>> amount_and_length;
+  std::string missing;  ///< why the sum cannot be made
 };
 
-OtherLines other_lines(const Run& run, const ThicknessRoute& route, const Measurement& m) {
+OtherLines other_lines(const RouteWork& work, const Measurement& m) {
   OtherLines sum;
   double variance = 0.0;
-  for (std::size_t l = 0; l < run.lines.size(); ++l) {
-    if (l == *route.film_line || !m.lines[l]) continue;
-    const double s = run.lines[l].sensitivity ? run.lines[l].sensitivity->value : 1.0;
-    const double amount = m.lines[l]->value / s;
-    Findings already_noted;
-    const double relative = run.lines[l].sensitivity ? detail::with_assumed_sensitivity(*run.lines[l].sensitivity, already_noted).sd() / s : 0.0;
+  for (const LineBelow& below : work.below) {
+    if (!m.lines[below.line]) {
+      sum.missing = m.missing[below.line];
+      return sum;
+    }
+    const double response = below.response.value, amount = m.lines[below.line]->value / response;
     sum.amount.value += amount;
-    variance += std::pow(m.lines[l]->sd / s, 2) + std::pow(relative * amount, 2);
-    sum.amount_and_length.emplace_back(amount, organic_attenuation_length_nm(run.lines[l].kinetic_energy_ev));
+    variance += std::pow(m.lines[below.line]->sd / response, 2) + std::pow(below.response.sd() / response * amount, 2);
+    sum.amount_and_length.emplace_back(amount, below.length_nm);
   }
   sum.amount.standard_uncertainty = std::sqrt(variance);
   return sum;
@@ -295,16 +325,15 @@ Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_inde
     }
     FilmMeasurement general = measurement_of(run, work, m, e.result.film_area, e.result.substrate_area, contamination_nm, e.findings);
     if (sum_route) {
-      const OtherLines others = other_lines(run, route, m);
-      if (!(others.amount.value > 0.0)) {
-        e.result.failure = "spot \"" + m.spot + "\" has no other line to compare the contamination with";
+      const OtherLines others = other_lines(work, m);
+      if (!others.missing.empty() || !(others.amount.value > 0.0)) {
+        e.result.failure = !others.missing.empty() ? others.missing : "spot \"" + m.spot + "\" has no other line to compare the contamination with";
         return e;
       }
-      if (const auto& s = run.lines[*route.film_line].sensitivity) {
-        general.factors.push_back({"sensitivity", detail::with_assumed_sensitivity(*s, e.findings), -1.0, ContributionKind::scale});
-      }
+      general.factors.push_back({"sensitivity", work.response, -1.0, ContributionKind::scale});
       general.factors.push_back({"other_lines", others.amount, -1.0, ContributionKind::repeatability, true});
       general.substrate_line_length_nm = settle_common_length(general, others);
+      if (route.film_length.predicted) general.correlations.push_back({kFilmLengthName, kSubstrateLengthName, kSameFormulaCorrelation});
     }
     try {
       e.result.thickness = thickness_from_factors(general);
@@ -472,7 +501,7 @@ ThicknessResults run_thickness(const Run& run, const Progress& progress) {
   std::vector<RouteWork> work;
   std::optional<std::size_t> contamination;
   for (std::size_t r = 0; r < all.routes.size(); ++r) {
-    work.push_back({&all.routes[r], detail::overlying_layers(run, all.routes[r])});
+    work.push_back(work_of(run, all.routes[r]));
     if (all.routes[r].contamination) contamination = r;
   }
   const std::size_t count = measurements.size() * work.size();

@@ -18,6 +18,7 @@
 #include "pellicle/base/number.hpp"
 #include "pellicle/base/parallel.hpp"
 #include "pellicle/uncertainty/detection.hpp"
+#include "pellicle/uncertainty/distribution.hpp"
 
 namespace pellicle {
 namespace {
@@ -230,14 +231,6 @@ void set_areal_densities(const ThicknessRoute& route, ThicknessResult& result) {
   if (route.emitter_density_per_nm3 > 0.0) result.emitting_atoms_per_nm2 = quantity(route.emitter_density_per_nm3);
 }
 
-/// Thickness with one area moved to a one-sided limit.
-double thickness_at(FilmMeasurement m, const char* name, double area) {
-  for (SignalFactor& f : m.factors) {
-    if (f.name == name) f.quantity = Quantity(area, 0.0);
-  }
-  return thickness_from_factors(m).value_nm;
-}
-
 void bound_from_undetected(const Run& run, const RouteWork& work, const Measurement& m, const LineArea* film, const LineArea* substrate,
                            const std::optional<Quantity>& contamination_nm, Evaluated& e) {
   const bool film_lost = film && !film->detected();
@@ -252,13 +245,19 @@ void bound_from_undetected(const Run& run, const RouteWork& work, const Measurem
                        " line has no area, and neither area_sd nor background_counts say how weak it may be";
     return;
   }
-  const double limit = upper_bound_95(lost.value, lost.sd);
-  const std::optional<Quantity> film_area = film ? std::optional(Quantity(film_lost ? limit : film->value, film_lost ? 0.0 : film->sd)) : std::nullopt;
-  const std::optional<Quantity> substrate_area =
-      substrate ? std::optional(Quantity(substrate_lost ? limit : substrate->value, substrate_lost ? 0.0 : substrate->sd)) : std::nullopt;
-  const FilmMeasurement general = measurement_of(run, work, m, film_area, substrate_area, contamination_nm, e.findings);
-  const Thickness at_limit = thickness_from_factors(general);
-  e.result.bound = ThicknessBound{film_lost, at_limit.value_nm};
+  const auto with_lost_area = [&](double area) {
+    const auto quantity = [&](const LineArea* line) -> std::optional<Quantity> {
+      if (!line) return std::nullopt;
+      return line == &lost ? Quantity(area, 0.0) : Quantity(line->value, line->sd);
+    };
+    return thickness_from_factors(measurement_of(run, work, m, quantity(film), quantity(substrate), contamination_nm, e.findings));
+  };
+  // The area may be anything up to its limit, and lengths, references and angle are uncertain as well: their part is
+  // added in quadrature to the way from the middle of the area's distribution to its limit.
+  const Thickness at_limit = with_lost_area(upper_bound_95(lost.value, lost.sd));
+  const double middle = with_lost_area(Distribution::truncated_normal(lost.value, lost.sd).quantile(0.5)).value_nm;
+  const double way = std::hypot(at_limit.value_nm - middle, kOneSided95 * at_limit.standard_uncertainty_nm);
+  e.result.bound = ThicknessBound{film_lost, film_lost ? middle + way : std::max(middle - way, 0.0)};
   add_findings(e.findings, at_limit.findings);
   add_finding(e.findings, {film_lost ? "film_not_detected" : "substrate_not_detected", Severity::warning,
                            film_lost ? "the film's line is not detected: the thickness is at most the bound (95 %)"
@@ -266,14 +265,25 @@ void bound_from_undetected(const Run& run, const RouteWork& work, const Measurem
                            lost.value, lost.decision_level()});
 }
 
-/// A single line beyond its reference area: the area moved by 1.645 u toward it bounds the thickness.
+/// A single line beyond its reference area: r = area/reference, moved by 1.645 of its standard uncertainty below one,
+/// bounds the thickness. Length and angle add their part: to an upper bound in quadrature, since the thickness itself may
+/// be nothing; from a lower bound it is taken whole, since the thickness itself may be anything.
 bool bound_from_excess(const ThicknessRoute& route, const FilmMeasurement& general, const LineArea& area, Evaluated& e) {
   const bool film = route.method == ThicknessMethod::film_line;
   if (!film && route.method != ThicknessMethod::substrate_line) return false;
-  const double low = area.value - kOneSided95 * area.sd;
-  if (!(low > 0.0)) return false;
+  FilmMeasurement moved = general;
+  double relative = 0.0;
+  for (SignalFactor& f : moved.factors) {
+    relative = std::hypot(relative, f.power * f.quantity.sd() / f.quantity.value);
+    f.quantity.standard_uncertainty = 0.0;
+  }
+  for (SignalFactor& f : moved.factors) {
+    if (f.name == (film ? "film_area" : "substrate_area")) f.quantity.value *= 1.0 - kOneSided95 * relative;
+  }
   try {
-    e.result.bound = ThicknessBound{!film, thickness_at(general, film ? "film_area" : "substrate_area", low)};
+    const Thickness at_limit = thickness_from_factors(moved);
+    const double rest = kOneSided95 * at_limit.standard_uncertainty_nm;
+    e.result.bound = film ? ThicknessBound{false, std::max(at_limit.value_nm - rest, 0.0)} : ThicknessBound{true, std::hypot(at_limit.value_nm, rest)};
   } catch (const Error&) {
     return false;
   }

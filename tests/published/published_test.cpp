@@ -14,6 +14,7 @@
 #include <string>
 
 #include "pellicle/pellicle.hpp"
+#include "published/film_routes.hpp"
 #include "published/uncertainty_engine.hpp"
 #include "support/check_rows.hpp"
 #include "support/close_to.hpp"
@@ -302,6 +303,7 @@ const std::map<std::string, Function>& functions() {
       {"relative_sensitivity_substrate_length", substrate_length_slope},
       {"combined_relative_sd_percent", correlated_percent},
     };
+    known.insert(test::film_route_functions().begin(), test::film_route_functions().end());
     known.insert(test::uncertainty_engine_functions().begin(), test::uncertainty_engine_functions().end());
     return known;
   }();

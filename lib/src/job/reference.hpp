@@ -32,6 +32,14 @@ void correlate_formulas(ThicknessRoute& route);
 /// 1/E^0.75: takes the escape depth of an average matrix out of what holds it.
 [[nodiscard]] double average_escape_depth_weight(double energy_ev) noexcept;
 
+/// Signal of a line per emitting atom of a thick solid, up to a constant common to all lines: thick_signal() without the
+/// atom density. Areas in atomic per cent hold the sensitivities; what is left is the IMFP over that of an average matrix.
+/// The uncertainty leaves out the IMFP, see kImfpRatioRelativeSd. @throws as thick_signal()
+[[nodiscard]] Quantity response_per_atom(const Run& run, const Line& line, std::vector<std::string>& applied, Findings& findings);
+
+/// Of a ratio of two predicted IMFPs: 10 % each, correlated by 0.9.
+inline constexpr double kImfpRatioRelativeSd = 0.045;
+
 /// A sensitivity with its uncertainty: the stated one, or the assumed one with its finding.
 [[nodiscard]] Quantity with_assumed_sensitivity(Quantity sensitivity, Findings& findings);
 

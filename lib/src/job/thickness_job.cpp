@@ -7,6 +7,7 @@
 #include "job/bounds.hpp"
 #include "job/contamination.hpp"
 #include "job/finding_pool.hpp"
+#include "job/length_choice.hpp"
 #include "job/measurements.hpp"
 #include "job/overlying.hpp"
 #include "job/summary.hpp"
@@ -67,6 +68,32 @@ SignalFactor area_factor(const char* name, const Quantity& area, double power) {
   return {name, area, power, ContributionKind::repeatability, true};
 }
 
+/// Correlation coefficient of the areas of two lines: covariances of their components over both uncertainties. A
+/// component that stands in both is fully correlated with itself.
+double area_correlation(const Run& run, const Measurement& m, std::size_t first, std::size_t second) {
+  const LineArea& a = *m.lines[first];
+  const LineArea& b = *m.lines[second];
+  if (!(a.sd > 0.0) || !(b.sd > 0.0)) return 0.0;
+  const auto coefficient = [&](const std::string& x, const std::string& y) {
+    if (x == y) return 1.0;
+    for (const AreaCorrelation& c : run.area_correlations) {
+      if ((c.first == x && c.second == y) || (c.first == y && c.second == x)) return c.coefficient;
+    }
+    return 0.0;
+  };
+  const auto sd_of = [](const LineArea& area, std::size_t component) { return area.component_sd.empty() ? area.sd : area.component_sd[component]; };
+  const std::vector<Component>& parts = run.lines[first].components;
+  const std::vector<Component>& others = run.lines[second].components;
+  double covariance = 0.0;
+  for (std::size_t i = 0; i < parts.size(); ++i) {
+    for (std::size_t j = 0; j < others.size(); ++j) {
+      const double r = coefficient(parts[i].label, others[j].label);
+      if (r != 0.0) covariance += r * sd_of(a, i) * sd_of(b, j);
+    }
+  }
+  return std::clamp(covariance / (a.sd * b.sd), -1.0, 1.0);
+}
+
 /// The measurement of one spot by one route, with these areas.
 FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Measurement& m, const std::optional<Quantity>& film,
                                const std::optional<Quantity>& substrate,
@@ -91,7 +118,9 @@ FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Meas
     }
   }
   const bool single = route.method == ThicknessMethod::film_line || route.method == ThicknessMethod::substrate_line;
-  if (single && run.geometry.signal_area != SignalArea::analyser) {
+  // A reference without an angle of its own was measured like the areas: there is nothing to carry over.
+  const std::optional<std::size_t>& own_line = route.film_line ? route.film_line : route.substrate_line;
+  if (single && run.geometry.signal_area != SignalArea::analyser && run.lines[*own_line].reference_emission_deg) {
     general.factors.push_back({"tilt", Quantity(tilt_factor(run.geometry, m.emission_deg), 0.0), -1.0, ContributionKind::scale});
   }
   if (!work.overlying.empty()) {

@@ -36,7 +36,7 @@ struct ReferenceRatio {
 /// How the thickness of a contamination layer follows from its C 1s line.
 enum class ContaminationRoute {
   reference,      ///< C 1s against the area of an infinitely thick contamination layer
-  sensitivities,  ///< C 1s against the sum of all other lines, each over its sensitivity
+  sensitivities,  ///< C 1s against the sum of all lines from below, each over its response per atom
   atomic_percent  ///< from the apparent atomic % C; assumes equal lengths and matrix factors
 };
 

@@ -270,7 +270,8 @@ TEST_CASE("carbon against all other lines is found from areas of every kind of s
             text.lines += line(e.label, e.level, e.from, "sensitivity = " + number(e.sensitivity) + "\ntransmission = " + number(e.transmission));
             const double energy = energy_of(e.level);
             double area = 1e4 * e.sensitivity * atoms(e.material, e.element);
-            if (!holds_depth) area *= imfp(e.material, energy);
+            area *= imfp(e.material, energy);
+            if (holds_depth) area /= std::pow(energy, 0.75) / 100.0;  // of an average matrix
             if (raw && !holds_transmission) area *= e.transmission;
             if (kind == "atomic") area *= angular_weight(e.level, 90.0);
             if (kind == "average-matrix") area /= std::pow(energy, 0.75) / 100.0;
@@ -321,7 +322,7 @@ TEST_CASE("sensitivities are not asked of areas that hold them") {
   Text text;
   text.lines = line("oxide", "Si 2p", "film", "sensitivity = 0.3") + line("metal", "Si 2p", "substrate", "sensitivity = 0.3");
   text.data = "area_unit = \"atomic-percent\"\n";
-  CHECK(contains(error_of<InputError>([&] { (void)thicknesses(text.toml(), table({{"oxide", 20.0}, {"metal", 10.0}})); }).fact(), "hold the sensitivities"));
+  CHECK(contains(error_of<InputError>([&] { (void)thicknesses(text.toml(), table({{"oxide", 20.0}, {"metal", 10.0}})); }).fact(), "divided by one already"));
 }
 
 TEST_CASE("contamination found by any route is taken out of lines of different energy") {
@@ -442,7 +443,8 @@ TEST_CASE("a film that is not seen is bounded from above") {
   CHECK(close_to(exceeded_of_truncated_normal(0.0, 1.0, 0.05), 1.959963985, test::abs(1e-6)));
   ThicknessBound b = bound("line,area,area_sd\noxide,nd,10\nmetal,1000,1e-6\n");
   CHECK(b.upper);
-  CHECK(close_to(b.at95_nm, thickness(19.59963985, 1000.0), rel(1e-6)));
+  // Nothing but "nd": it may have been anything up to the decision level, 1.645 · 10, with its own spread about that.
+  CHECK(close_to(b.at95_nm, thickness(exceeded_of_truncated_normal(16.448536269514722, 10.0, 0.05), 1000.0), rel(1e-6)));
   for (const double area : {-12.0, 4.0, 16.0}) {
     b = bound("line,area,area_sd\noxide," + number(area) + ",10\nmetal,1000,1e-6\n");
     CHECK(b.upper);
@@ -454,7 +456,11 @@ TEST_CASE("a film that is not seen is bounded from above") {
   // Counts: no signal over 450 of background spreads by √(2·450) = 30.
   text.data = "area_unit = \"counts\"\n";
   b = bound("line,area,area_sd,background_counts\noxide,nd,,450\nmetal,1000,1e-6,300\n");
-  CHECK(close_to(b.at95_nm, thickness(1.959963985 * 30.0, 1000.0), rel(1e-6)));
+  // Decision level 1.645 · 30, and the 2.71 counts that the detection limit adds; without the cut at zero the limit would
+  // be 2.71 + 4.65 √450 = 101.4 counts [currie1968].
+  const double counts = exceeded_of_truncated_normal(2.71 + 1.6448536269514722 * 30.0, 30.0, 0.05);
+  CHECK(close_to(counts, 2.71 + 4.65 * std::sqrt(450.0), rel(0.03)));
+  CHECK(close_to(b.at95_nm, thickness(counts, 1000.0), rel(1e-6)));
 }
 
 TEST_CASE("a substrate that is not seen bounds the film from below") {
@@ -473,10 +479,9 @@ TEST_CASE("a substrate that is not seen bounds the film from below") {
   CHECK(contains(neither.results[0].failure, "neither"));
 }
 
-TEST_CASE("an area beyond its reference bounds the film by 1.645 of its standard deviations") {
-  // A film line stronger than of a thick film: at least −L cosθ ln(1 − (I − 1.645 u)/I∞); a substrate line stronger than
-  // bare: at most −L cosθ ln((I − 1.645 u)/I∞).
-  const double limit = 1010.0 - 1.6448536269514722 * 20.0;
+TEST_CASE("an area beyond its reference bounds the film") {
+  // A film line stronger than of a thick film lets 1 − I/I∞ = −0.01 ± 0.02 through, and that is not below zero. A
+  // substrate line stronger than bare: x = −ln(I/I∞) = −0.00995 ± 20/1010, and x is not below zero.
   Text text;
   text.emission_sd = "0";
   text.lines = line("oxide", "Si 2p", "film", "reference_area = 1000\nlength_nm = { film = 2.5 }");
@@ -484,18 +489,18 @@ TEST_CASE("an area beyond its reference bounds the film by 1.645 of its standard
   const ThicknessResults above = thicknesses(text.toml(), "line,area,area_sd\noxide,1010,20\n");
   REQUIRE(above.results[0].bound.has_value());
   CHECK_FALSE(above.results[0].bound->upper);
-  CHECK(close_to(above.results[0].bound->at95_nm, -2.5 * cosine_of_deg(45.0) * std::log1p(-limit / 1000.0), rel(1e-9)));
+  CHECK(close_to(above.results[0].bound->at95_nm, -2.5 * cosine_of_deg(45.0) * std::log(exceeded_of_truncated_normal(-0.01, 0.02, 0.05)), rel(1e-6)));
   text.lines = line("metal", "Si 2p", "substrate", "reference_area = 1000\nlength_nm = { film = 2.5 }");
   text.options = "method = \"substrate-line\"\n";
   const ThicknessResults below = thicknesses(text.toml(), "line,area,area_sd\nmetal,1010,20\n");
   REQUIRE(below.results[0].bound.has_value());
   CHECK(below.results[0].bound->upper);
-  CHECK(close_to(below.results[0].bound->at95_nm, -2.5 * cosine_of_deg(45.0) * std::log(limit / 1000.0), rel(1e-9)));
+  CHECK(close_to(below.results[0].bound->at95_nm, 2.5 * cosine_of_deg(45.0) * exceeded_of_truncated_normal(-std::log(1.01), 20.0 / 1010.0, 0.05), rel(1e-6)));
   // Nothing left of the substrate: the film is at least as thick as its limit allows.
   const ThicknessResults gone = thicknesses(text.toml(), "line,area,area_sd\nmetal,nd,20\n");
   REQUIRE(gone.results[0].bound.has_value());
   CHECK_FALSE(gone.results[0].bound->upper);
-  CHECK(close_to(gone.results[0].bound->at95_nm, -2.5 * cosine_of_deg(45.0) * std::log(20.0 * 1.959963985 / 1000.0), rel(1e-6)));
+  CHECK(close_to(gone.results[0].bound->at95_nm, -2.5 * cosine_of_deg(45.0) * std::log(exceeded_of_truncated_normal(1.6448536269514722 * 20.0, 20.0, 0.05) / 1000.0), rel(1e-6)));
 }
 
 TEST_CASE("a bound holds the uncertainty of length and reference as well") {
@@ -527,16 +532,17 @@ TEST_CASE("a bound holds the uncertainty of length and reference as well") {
     CHECK(all.results[0].bound->upper == film_lost);
     CHECK(close_to(all.results[0].bound->at95_nm, *at, rel(0.02)));
   }
-  // A film line as strong as its reference, both uncertain by 2 %: at least −L cosθ ln(1.645·0.02·√2) less 1.645·10 %.
+  // A film line as strong as its reference, both uncertain by 2 %: it lets 0 ± 0.02 √2 through. 10 % of the length count
+  // one-sidedly, exp(1.645 · 0.1).
   text.rest.clear();
   text.lines = line("oxide", "Si 2p", "film", "reference_area = { value = 1000, sd = 20 }\nlength_nm = { film = { value = 2.5, relative_sd = 0.1 } }");
   text.options = "method = \"film-line\"\n";
-  const double thick = -2.5 * cosine_of_deg(45.0) * std::log(1.6448536269514722 * 0.02 * std::sqrt(2.0));
-  CHECK(close_to(thicknesses(text.toml(), "line,area,area_sd\noxide,1000,20\n").results[0].bound->at95_nm, thick * (1.0 - 0.16448536269514722), rel(1e-9)));
+  const double thick = -2.5 * cosine_of_deg(45.0) * std::log(exceeded_of_truncated_normal(0.0, 0.02 * std::sqrt(2.0), 0.05));
+  CHECK(close_to(thicknesses(text.toml(), "line,area,area_sd\noxide,1000,20\n").results[0].bound->at95_nm, thick * std::exp(-0.16448536269514722), rel(1e-6)));
   text.lines = line("metal", "Si 2p", "substrate", "reference_area = { value = 1000, sd = 20 }\nlength_nm = { film = { value = 2.5, relative_sd = 0.1 } }");
   text.options = "method = \"substrate-line\"\n";
-  const double thin = -2.5 * cosine_of_deg(45.0) * std::log(1.001 * (1.0 - 1.6448536269514722 * std::hypot(0.02, 20.0 / 1001.0)));
-  CHECK(close_to(thicknesses(text.toml(), "line,area,area_sd\nmetal,1001,20\n").results[0].bound->at95_nm, thin * std::hypot(1.0, 0.16448536269514722), rel(1e-9)));
+  const double thin = 2.5 * cosine_of_deg(45.0) * exceeded_of_truncated_normal(-std::log(1.001), std::hypot(0.02, 20.0 / 1001.0), 0.05);
+  CHECK(close_to(thicknesses(text.toml(), "line,area,area_sd\nmetal,1001,20\n").results[0].bound->at95_nm, thin * std::exp(0.16448536269514722), rel(1e-6)));
 }
 
 }  // TEST_SUITE("bounds")

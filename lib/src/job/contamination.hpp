@@ -1,11 +1,12 @@
 #pragma once
-/// The contamination layer from its C 1s line against the sum of all other lines, each over its sensitivity.
+/// The contamination layer from its C 1s line against the sum of all lines from below, each over its response per atom.
 ///
-///   A_C/S_C / Σ A_l/S_l = R₀ [1 − exp(−x)] exp(ϱ x),  R₀ = N_C λ_C(E_C) / Σ_elements N_i λ(E_i)
+///   (A_C/q_C) / Σ A_l/q_l = R₀ [1 − exp(−x)] exp(ϱ x),  R₀ = N_C/N
 ///
-/// with N and λ of the contamination in the numerator and of the solid just below it in the denominator: every element
-/// that a line shows counts once. @cite smith2005
+/// q: response per atom, IMFP included; N_C carbon atoms per volume of the contamination, N atoms (hydrogen aside) of the
+/// solid just below it. @cite smith2005
 
+#include <string>
 #include <vector>
 
 #include "job/measurements.hpp"
@@ -13,17 +14,28 @@
 
 namespace pellicle::detail {
 
-/// R₀ of this route with its uncertainty. @param applied gets what it is made of
-/// @throws InputError for a line without a sensitivity (areas in atomic-percent need none), elemental sensitivities, or
-///         no other line below the contamination
-[[nodiscard]] Quantity contamination_reference(const Run& run, const Line& carbon, std::vector<std::string>& applied);
+/// A line from below the contamination, as its sum needs it.
+struct LineBelow {
+  std::size_t line = 0;    ///< position in Run::lines
+  Quantity response;       ///< per atom, unit common to all lines
+  double length_nm = 0.0;  ///< attenuation length in the contamination
+};
 
-/// Attenuation lengths in the contamination of all lines, by position; 0 for those that come from it.
-[[nodiscard]] std::vector<double> lengths_in_contamination(const Run& run, const ThicknessRoute& route);
+/// What the route needs besides the areas.
+struct CarbonBalance {
+  Quantity response;  ///< of C 1s, per atom
+  std::vector<LineBelow> below;
+};
 
-/// Adds the sum of the other lines to a measurement of C 1s, and the one length that attenuates it like its parts do.
+/// Adds R₀ to the route of this line.
+/// @throws InputError for a line without a sensitivity (areas in atomic-percent need none), or elemental sensitivities
+void add_carbon_reference(const Run& run, const Line& carbon, ThicknessRoute& route);
+
+[[nodiscard]] CarbonBalance carbon_balance(const Run& run, const ThicknessRoute& route);
+
+/// Adds the sum of the lines below to a measurement of C 1s, and the one length that attenuates it like its parts do.
 /// @return why it cannot be done; empty when it was
-[[nodiscard]] std::string add_other_lines(const Run& run, const ThicknessRoute& route, const std::vector<double>& lengths,
-                                          const Measurement& m, FilmMeasurement& measurement, Findings& findings);
+[[nodiscard]] std::string add_lines_below(const ThicknessRoute& route, const CarbonBalance& balance, const Measurement& m,
+                                          FilmMeasurement& measurement);
 
 }  // namespace pellicle::detail

@@ -122,7 +122,6 @@ LineArea sum_components(const Run& run, const std::vector<const Component*>& par
     const double w = parts[i]->weight;
     const LineArea& a = areas[i].area;
     sum.value += w * a.value;
-    if (parts.size() > 1) sum.component_sd.push_back(w * a.sd);
     variance += w * w * a.sd * a.sd;
     if (a.sd_at_zero) zero_variance += w * w * *a.sd_at_zero * *a.sd_at_zero;
     zero_known = zero_known && a.sd_at_zero.has_value();

@@ -18,7 +18,6 @@ struct LineArea {
   std::optional<double> one_count;        ///< area of one count, when counts are known
   bool sd_assumed = false;
   bool background_missing = false;        ///< counted without the background
-  std::vector<double> component_sd;       ///< weight times sd of each component where there are several
 
   /// Decision level 1.645 u(0): 2.33 √B where the background is known. @cite currie1968
   [[nodiscard]] std::optional<double> decision_level() const;

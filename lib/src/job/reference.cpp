@@ -73,6 +73,17 @@ SignalFactor atom_density(const Run& run, const Line& line) {
   return {tag("density", line), relative(atom_density_per_nm3(material, line.level->element->symbol), sd), 1.0, ContributionKind::scale};
 }
 
+/// 1/E^0.75: takes the escape depth of an average matrix out of what holds it.
+double average_escape_depth_weight(double energy_ev) { return std::pow(energy_ev, -kAverageMatrixExponent); }
+
+/// IMFP of a thick layer's signal: TPP-2M, or S1 where that is refused. @throws DomainError when both are
+ModelValue signal_imfp(const Material& material, double energy_ev) {
+  ModelValue value = predict_imfp(material, energy_ev, ImfpModel::tpp2m);
+  if (!value.value_nm) value = predict_imfp(material, energy_ev, ImfpModel::s1);
+  if (!value.value_nm) throw DomainError(material.id, value.refusal, "give the reference ratio or reference areas");
+  return value;
+}
+
 /// Signal of an infinitely thick layer of a line's material, up to a constant common to all lines.
 struct ThickSignal {
   std::vector<SignalFactor> factors;  ///< with power +1
@@ -192,15 +203,11 @@ ThickSignal computed_signal(const Run& run, const Line& line, bool shared_line, 
   signal.applied = {"atom density", "IMFP (Q = 1)"};
   if (shared_line) return signal;
   if (run.area_unit == AreaUnit::atomic_percent) {
-    if (run.sensitivity_includes_escape_depth) {
-      take_out_escape_depth(line, signal);
-      signal.applied.back() = "IMFP over that of an average matrix (∝ E^0.75)";
-    }
+    take_out_escape_depth(line, signal);
+    signal.applied.back() = "IMFP over that of an average matrix (∝ E^0.75)";
     add_finding(findings, {"atomic_percent_assumption", Severity::warning,
-                           std::string("apparent atomic % is taken as area over a sensitivity that holds cross section, asymmetry and "
-                                       "transmission ") +
-                               (run.sensitivity_includes_escape_depth ? "and an average escape depth" : "but no escape depth") +
-                               " (sensitivity_includes says which)"});
+                           "apparent atomic % is taken as area over a sensitivity that holds cross section, asymmetry, transmission and an average "
+                           "escape depth (common practice, no source)"});
     return signal;
   }
   const TabulatedValue section = photoionisation_cross_section_barn(*line.level, run.source);
@@ -284,15 +291,6 @@ double add_tilt_factor(const Run& run, const Line& line, double power, Thickness
 
 }  // namespace
 
-double average_escape_depth_weight(double energy_ev) noexcept { return std::pow(energy_ev, -kAverageMatrixExponent); }
-
-ModelValue signal_imfp(const Material& material, double energy_ev) {
-  ModelValue value = predict_imfp(material, energy_ev, ImfpModel::tpp2m);
-  if (!value.value_nm) value = predict_imfp(material, energy_ev, ImfpModel::s1);
-  if (!value.value_nm) throw DomainError(material.id, value.refusal, "give the reference ratio or reference areas");
-  return value;
-}
-
 void correlate_formulas(ThicknessRoute& route) {
   for (std::size_t a = 0; a < route.formulas.size(); ++a) {
     for (std::size_t b = a + 1; b < route.formulas.size(); ++b) {
@@ -350,6 +348,16 @@ LineScale line_scale(const Run& run) {
   return sensitivities.empty() ? LineScale::none : LineScale::sensitivity;
 }
 
+Quantity response_per_atom(const Run& run, const Line& line, std::vector<std::string>& applied, Findings& findings) {
+  ThickSignal signal = thick_signal(run, line, run.area_unit != AreaUnit::atomic_percent, false, findings);
+  std::erase_if(signal.factors, [](const SignalFactor& f) { return f.name.starts_with("density_"); });
+  for (SignalFactor& f : signal.factors) {
+    if (f.name.starts_with("imfp_")) f.quantity.standard_uncertainty = 0.0;
+  }
+  applied = signal.applied;
+  return product(signal.factors);
+}
+
 void add_reference_ratio(const Run& run, const ReferenceRatio* reference, const Line& film, const Line& substrate, ThicknessRoute& route) {
   if (reference && reference->origin == ReferenceOrigin::computed) {
     add_computed_ratio(run, film, substrate, false, route);
@@ -404,10 +412,6 @@ void add_reference_area(const Run& run, const Line& line, ThicknessRoute& route)
   route.factors.push_back({"reference_area", *line.reference_area, -1.0, ContributionKind::scale, true});
   route.reference_ratio = line.reference_area;
   route.reference_origin = "reference area";
-  if (run.geometry.signal_area != SignalArea::analyser && !line.reference_emission_deg) {
-    throw InputError(run.place, "the reference_area of \"" + line.label + "\" states no emission_deg, and areas change with the tilt here",
-                     "write reference_area = { value = …, sd = …, emission_deg = … }");
-  }
   add_tilt_factor(run, line, 1.0, route, "tilt_of_reference");
 }
 

@@ -26,18 +26,13 @@ inline constexpr double kSameFormulaCorrelation = 0.9;
 /// Correlates the inputs of a route that come from one formula. A set of equal coefficients is always possible.
 void correlate_formulas(ThicknessRoute& route);
 
-/// IMFP of a thick layer's signal: TPP-2M, or S1 where that is refused. @throws DomainError when both are
-[[nodiscard]] ModelValue signal_imfp(const Material& material, double energy_ev);
-
-/// 1/E^0.75: takes the escape depth of an average matrix out of what holds it.
-[[nodiscard]] double average_escape_depth_weight(double energy_ev) noexcept;
-
 /// Signal of a line per emitting atom of a thick solid, up to a constant common to all lines: thick_signal() without the
-/// atom density. Areas in atomic per cent hold the sensitivities; what is left is the IMFP over that of an average matrix.
+/// atom density. Areas in atomic-percent hold the sensitivities; what is left is the IMFP over that of an average matrix.
+/// Elemental sensitivities of a pure element count its own density as well, which is the same for one element only.
 /// The uncertainty leaves out the IMFP, see kImfpRatioRelativeSd. @throws as thick_signal()
 [[nodiscard]] Quantity response_per_atom(const Run& run, const Line& line, std::vector<std::string>& applied, Findings& findings);
 
-/// Of a ratio of two predicted IMFPs: 10 % each, correlated by 0.9.
+/// Relative standard uncertainty of a ratio of two predicted IMFPs: 10 % each, correlated by kSameFormulaCorrelation.
 inline constexpr double kImfpRatioRelativeSd = 0.045;
 
 /// A sensitivity with its uncertainty: the stated one, or the assumed one with its finding.

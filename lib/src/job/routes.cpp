@@ -189,9 +189,7 @@ ThicknessRoute contamination_route_of(const Run& run) {
     case ContaminationRoute::sensitivities: break;
   }
   route.method = ThicknessMethod::ratio;
-  route.reference_origin = "sensitivities";
-  route.reference_ratio = detail::contamination_reference(run, line, route.reference_applied);
-  route.factors.push_back({"reference_ratio", *route.reference_ratio, -1.0, ContributionKind::scale});
+  detail::add_carbon_reference(run, line, route);
   return route;
 }
 

@@ -7,7 +7,6 @@
 #include "job/bounds.hpp"
 #include "job/contamination.hpp"
 #include "job/finding_pool.hpp"
-#include "job/length_choice.hpp"
 #include "job/measurements.hpp"
 #include "job/overlying.hpp"
 #include "job/summary.hpp"
@@ -30,7 +29,7 @@ constexpr std::size_t kMonteCarloResults = 20;
 struct RouteWork {
   const ThicknessRoute* route;
   std::vector<detail::OverlyingLayer> overlying;
-  std::vector<double> lengths_in_contamination;  ///< of all lines, for the contamination route "sensitivities"
+  std::optional<detail::CarbonBalance> carbon;  ///< of the contamination route "sensitivities"
 };
 
 /// A result with the findings it alone has.
@@ -66,32 +65,6 @@ void note_area(const LineArea& area, Findings& findings) {
 
 SignalFactor area_factor(const char* name, const Quantity& area, double power) {
   return {name, area, power, ContributionKind::repeatability, true};
-}
-
-/// Correlation coefficient of the areas of two lines: covariances of their components over both uncertainties. A
-/// component that stands in both is fully correlated with itself.
-double area_correlation(const Run& run, const Measurement& m, std::size_t first, std::size_t second) {
-  const LineArea& a = *m.lines[first];
-  const LineArea& b = *m.lines[second];
-  if (!(a.sd > 0.0) || !(b.sd > 0.0)) return 0.0;
-  const auto coefficient = [&](const std::string& x, const std::string& y) {
-    if (x == y) return 1.0;
-    for (const AreaCorrelation& c : run.area_correlations) {
-      if ((c.first == x && c.second == y) || (c.first == y && c.second == x)) return c.coefficient;
-    }
-    return 0.0;
-  };
-  const auto sd_of = [](const LineArea& area, std::size_t component) { return area.component_sd.empty() ? area.sd : area.component_sd[component]; };
-  const std::vector<Component>& parts = run.lines[first].components;
-  const std::vector<Component>& others = run.lines[second].components;
-  double covariance = 0.0;
-  for (std::size_t i = 0; i < parts.size(); ++i) {
-    for (std::size_t j = 0; j < others.size(); ++j) {
-      const double r = coefficient(parts[i].label, others[j].label);
-      if (r != 0.0) covariance += r * sd_of(a, i) * sd_of(b, j);
-    }
-  }
-  return std::clamp(covariance / (a.sd * b.sd), -1.0, 1.0);
 }
 
 /// The measurement of one spot by one route, with these areas.
@@ -240,7 +213,7 @@ Evaluated evaluate(const Run& run, const RouteWork& work, std::size_t route_inde
     }
     FilmMeasurement general = measurement_of(run, work, m, e.result.film_area, e.result.substrate_area, contamination, e.findings);
     if (sum_route) {
-      e.result.failure = detail::add_other_lines(run, route, work.lengths_in_contamination, m, general, e.findings);
+      e.result.failure = detail::add_lines_below(route, *work.carbon, m, general);
       if (!e.result.failure.empty()) return e;
     }
     if (const auto bound = detail::bound_of_single_line(general)) {
@@ -330,7 +303,7 @@ ThicknessResults run_thickness(const Run& run, const Progress& progress) {
     const ThicknessRoute& route = all.routes[r];
     work.push_back({&route, detail::overlying_layers(run, route), {}});
     if (route.contamination) contamination_route = r;
-    if (route.contamination == ContaminationRoute::sensitivities) work.back().lengths_in_contamination = detail::lengths_in_contamination(run, route);
+    if (route.contamination == ContaminationRoute::sensitivities) work.back().carbon = detail::carbon_balance(run, route);
   }
   const std::size_t count = measurements.size() * work.size();
   const IntervalMethod method = run.uncertainty.method;

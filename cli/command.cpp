@@ -3,6 +3,7 @@
 #include <unistd.h>
 
 #include <cstdio>
+#include <filesystem>
 #include <iostream>
 
 #include "pellicle/base/error.hpp"
@@ -26,6 +27,25 @@ void deliver(const Output& output, const std::string& text) {
   }
   if (std::fwrite(text.data(), 1, text.size(), stdout) != text.size() || std::fflush(stdout) != 0) {
     throw InputError("standard output", "the result could not be written");
+  }
+}
+
+void check_targets(const std::vector<std::string>& inputs, const std::vector<std::pair<std::string, std::string>>& targets) {
+  namespace fs = std::filesystem;
+  const auto whole = [](const std::string& path) {
+    std::error_code failure;
+    const fs::path full = fs::weakly_canonical(path, failure);
+    return failure ? fs::path(path) : full;
+  };
+  for (std::size_t i = 0; i < targets.size(); ++i) {
+    const auto& [option, path] = targets[i];
+    if (path.empty() || path == "-") continue;
+    for (const std::string& input : inputs) {
+      if (whole(path) == whole(input)) throw UsageError(option + " " + path + " would write over an input");
+    }
+    for (std::size_t k = 0; k < i; ++k) {
+      if (whole(path) == whole(targets[k].second)) throw UsageError(option + " and " + targets[k].first + " name the same file, " + path);
+    }
   }
 }
 

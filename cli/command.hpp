@@ -6,6 +6,8 @@
 #include <optional>
 #include <stdexcept>
 #include <string>
+#include <utility>
+#include <vector>
 
 #include <CLI/CLI.hpp>
 
@@ -36,6 +38,11 @@ void add_output_options(CLI::App& command, Output& output, bool with_csv = false
 
 /// Sends a result to --out or to standard output.
 void deliver(const Output& output, const std::string& text);
+
+/// Refuses to write over what is read, or two results into one file.
+/// @param targets option and path of everything that is written; "-" and empty paths are nobody's
+/// @throws UsageError
+void check_targets(const std::vector<std::string>& inputs, const std::vector<std::pair<std::string, std::string>>& targets);
 
 /// Line on standard error, unless --quiet.
 void remark(const Output& output, const std::string& text);

@@ -71,6 +71,15 @@ int run(int argc, char** argv) {
   } catch (const CLI::CallForVersion&) {
     std::cout << "pellicle " << version() << '\n';
     return kDone;
+  } catch (const CLI::ExtrasError&) {
+    const auto used = app.get_subcommands();
+    const std::string name = used.empty() ? "pellicle" : "pellicle " + used.front()->get_name();
+    const std::vector<std::string> left = app.remaining(true);
+    const auto option = std::find_if(left.begin(), left.end(), [](const std::string& word) { return word.starts_with("-"); });
+    const std::string& first = option != left.end() ? *option : left.empty() ? topic : left.front();
+    const char* what = option != left.end() ? "unknown option " : used.empty() || used.front() == help ? "unknown command " : "one argument too many: ";
+    std::cerr << name << ": " << what << first << "; see " << name << " --help\n";
+    return kUsage;
   } catch (const CLI::ParseError& e) {
     const auto used = app.get_subcommands();
     const std::string name = used.empty() ? "pellicle" : "pellicle " + used.front()->get_name();

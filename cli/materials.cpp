@@ -19,12 +19,23 @@ std::string lower(std::string text) {
   return text;
 }
 
+bool is_element(const std::string& text) {
+  try {
+    const Formula formula = Formula::parse(text);
+    return formula.terms().size() == 1 && formula.terms()[0].element->symbol == text;
+  } catch (const InputError&) {
+    return false;
+  }
+}
+
+/// An element symbol asks for the solids that hold the element, anything else is part of a word.
 bool matches(const Material& m, const std::string& filter) {
+  if (is_element(filter)) return m.formula.count(filter) > 0.0;
   const std::string wanted = lower(filter);
   for (const std::string& field : {m.id, m.name, m.formula.text(), m.category}) {
     if (lower(field).find(wanted) != std::string::npos) return true;
   }
-  return m.formula.count(filter) > 0.0;
+  return false;
 }
 
 int materials(const Options& o) {
@@ -32,7 +43,7 @@ int materials(const Options& o) {
   for (const Material& m : catalogue()) {
     if (matches(m, o.filter)) found.push_back(m);
   }
-  if (found.empty()) throw InputError("", "no catalogued material matches \"" + o.filter + "\"", "give part of an id, name, formula or category, or an element");
+  if (found.empty()) throw InputError("", "no catalogued material matches \"" + o.filter + "\"", "give an element symbol, or part of an id, name, formula or category");
   deliver(o.output, o.output.json ? materials_json(found) : materials_text(found));
   return kDone;
 }
@@ -44,7 +55,7 @@ Run add_materials(CLI::App& app) {
   CLI::App* c = app.add_subcommand("materials", "The catalogue of solids: density, band gap, and where each number comes from.");
   c->footer("  pellicle materials\n  pellicle materials alumin\n  pellicle materials Ti --json\n"
             "  Sources are keys of reference/sources.bib; \"from memory\" marks a number not confirmed in print.\n");
-  c->add_option("filter", o->filter, "part of an id, name, formula or category, or an element")->type_name("TEXT");
+  c->add_option("filter", o->filter, "an element symbol, or part of an id, name, formula or category")->type_name("TEXT");
   add_output_options(*c, o->output);
   return [o] { return materials(*o); };
 }

@@ -21,6 +21,8 @@ int make_new(const Options& o) {
   fs::path table = run;
   table.replace_extension(".csv");
   std::error_code failure;
+  const fs::path folder = run.parent_path();
+  if (!folder.empty() && !fs::is_directory(folder, failure)) throw InputError(o.run_file, "there is no folder " + folder.string());
   for (const fs::path& path : {run, table}) {
     if (fs::exists(path, failure)) throw InputError(path.string(), "the file exists already", "choose another name or move it away");
   }

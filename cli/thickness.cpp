@@ -1,6 +1,7 @@
 // pellicle thickness: film thickness from a run file, or from a few numbers on the command line.
 
 #include <algorithm>
+#include <filesystem>
 #include <memory>
 
 #include "command.hpp"
@@ -139,7 +140,6 @@ int exit_code(const Options& o, const ThicknessResults& results) {
 
 void set_uncertainty(const Options& o, pellicle::Run& run) {
   if (o.draws) {
-    if (*o.draws < 1000 || *o.draws > 100'000'000) throw InputError("--draws", std::to_string(*o.draws) + " is out of range", "expected 1000 to 1e8");
     run.uncertainty.draws = *o.draws;
     run.uncertainty.method = IntervalMethod::monte_carlo;
   }
@@ -149,9 +149,25 @@ void set_uncertainty(const Options& o, pellicle::Run& run) {
   if (o.interval == "adaptive") run.uncertainty.method = IntervalMethod::adaptive_monte_carlo;
 }
 
+/// A table that stands twice would count twice.
+void check_tables(const std::vector<std::string>& tables) {
+  for (std::size_t i = 0; i < tables.size(); ++i) {
+    for (std::size_t k = 0; k < i; ++k) {
+      std::error_code failure;
+      if (tables[i] == tables[k] || std::filesystem::equivalent(tables[i], tables[k], failure)) {
+        throw UsageError("--areas names " + tables[i] + " twice");
+      }
+    }
+  }
+}
+
 int thickness(const Options& o, const CLI::App& command) {
+  check_tables(o.tables);
   pellicle::Run run = o.run_file.empty() ? run_from_options(o) : read_run_file(o.run_file, o.tables);
   set_uncertainty(o, run);
+  std::vector<std::string> inputs = run.tables;
+  if (!o.run_file.empty()) inputs.push_back(o.run_file);
+  check_targets(inputs, {{"--out", o.output.out}, {"--plot", o.picture.plot.value_or("")}, {"--report", o.picture.report}});
   ProgressLine progress(o.output, "results");
   const ThicknessResults results = run_thickness(run, [&](std::size_t done, std::size_t all) { return progress(done, all); });
   progress.clear();
@@ -199,10 +215,10 @@ Run add_thickness(CLI::App& app) {
   add_quantity(*c, "length-nm", o->length, "attenuation length in the film; absent: predicted");
   c->add_option("--length-set", o->length_set, "calibrated lengths, e.g. sio2-2004 (see pellicle lengths --sets)")->type_name("SET");
   c->add_option("--interval", o->interval, "how the 95 % interval is found; default: monte-carlo for up to 20 results, else gum")
-      ->check(CLI::IsMember({"gum", "monte-carlo", "adaptive"}))
+      ->check(CLI::IsMember({"automatic", "gum", "monte-carlo", "adaptive"}))
       ->type_name("METHOD");
-  c->add_option("--draws", o->draws, "Monte Carlo draws (default 1000000)")->type_name("NUMBER");
-  c->add_option("--seed", o->seed, "seed of the Monte Carlo draws (default 1)")->type_name("NUMBER");
+  c->add_option("--draws", o->draws, "Monte Carlo draws, 1000 to 1e8 (default 1000000)")->check(CLI::Range(1e3, 1e8))->type_name("NUMBER");
+  c->add_option("--seed", o->seed, "seed of the Monte Carlo draws (default 1)")->check(CLI::NonNegativeNumber)->type_name("NUMBER");
   add_picture_options(*c, o->picture);
   add_output_options(*c, o->output, true, true);
   // What describes a measurement on the command line makes no sense beside a run file.
@@ -215,7 +231,7 @@ Run add_thickness(CLI::App& app) {
   return [o, alone, c] {
     check_picture_options(o->picture, o->output);
     const auto used = std::find_if(alone.begin(), alone.end(), [](const CLI::Option* option) { return option->count() > 0; });
-    if (o->run_file.empty() && !o->tables.empty()) throw UsageError("--areas needs a run file");
+    if (o->run_file.empty() && !o->tables.empty()) throw UsageError("--areas needs a run file, which stands before --areas");
     if (!o->run_file.empty() && used != alone.end()) throw UsageError((*used)->get_name() + " cannot stand beside a run file; write it into the run file");
     if (o->run_file.empty() && used == alone.end()) throw UsageError("give a run file, or --film, --substrate, --line, --source, an angle, areas and a reference");
     return thickness(*o, *c);

@@ -106,7 +106,7 @@ TEST_CASE("any text is an area table or refused in one line") {
     const auto body =
         *rc::gen::oneOf(text_of("a,1.5-e\n\""), text_of("0123456789,.\n-+"), rc::gen::arbitrary<std::string>());
     reads_or_refuses([&] {
-      for (const AreaRow& row : read_area_table(head + body, "t.csv")) {
+      for (const AreaRow& row : read_area_table(head + body, "t.csv").rows) {
         RC_ASSERT(!row.area || std::isfinite(*row.area));
         RC_ASSERT(!row.line.empty());
         RC_ASSERT(!row.emission_deg || (*row.emission_deg >= 0.0 && *row.emission_deg < 90.0));

@@ -16,7 +16,7 @@ TEST_CASE("every column arrives where it belongs in any order") {
   const auto rows = read_area_table(
       "step_ev,area,line,spot,emission_deg,area_sd,background_counts,dwell_s\n"
       "0.1,4210,Al 2p oxide,A,34,65,120,2.5\n",
-      "t.csv");
+      "t.csv").rows;
   REQUIRE(rows.size() == 1);
   const AreaRow& r = rows.front();
   CHECK(r.spot == "A");
@@ -30,8 +30,26 @@ TEST_CASE("every column arrives where it belongs in any order") {
   CHECK(r.line_number == 2);
 }
 
+TEST_CASE("columns that are none of ours are left unread and named") {
+  const AreaTable table = read_area_table("line,Remark,area,Operator\nSi 2p,\"a, b\",100,x\n", "t.csv");
+  REQUIRE(table.rows.size() == 1);
+  CHECK(table.rows[0].area == 100.0);
+  CHECK(table.unread_columns == std::vector<std::string>{"Remark", "Operator"});
+}
+
+TEST_CASE("a mapped column of a wide table takes its standard uncertainty along") {
+  AreaTableOptions options;
+  options.wide = true;
+  options.labels = {"Al 2p oxide"};
+  options.columns = {{"Al 2p oxide", "ox"}};
+  const auto rows = read_area_table("spot,ox,ox sd\nA,100,3\n", "t.csv", options).rows;
+  REQUIRE(rows.size() == 1);
+  CHECK(rows[0].line == "Al 2p oxide");
+  CHECK(rows[0].area_sd == 3.0);
+}
+
 TEST_CASE("line and area are enough") {
-  const auto rows = read_area_table("line,area\nSi 2p,100\n\nO 1s,0\n", "t.csv");
+  const auto rows = read_area_table("line,area\nSi 2p,100\n\nO 1s,0\n", "t.csv").rows;
   REQUIRE(rows.size() == 2);
   CHECK(rows[0].spot == "1");
   CHECK_FALSE(rows[0].emission_deg.has_value());
@@ -42,13 +60,13 @@ TEST_CASE("line and area are enough") {
 }
 
 TEST_CASE("a take-off angle becomes an emission angle and an empty cell the angle of the run") {
-  const auto rows = read_area_table("takeoff_deg,line,area\n56,a,1\n,a,1\n", "t.csv");
+  const auto rows = read_area_table("takeoff_deg,line,area\n56,a,1\n,a,1\n", "t.csv").rows;
   CHECK(rows[0].emission_deg == 34.0);
   CHECK_FALSE(rows[1].emission_deg.has_value());
 }
 
 TEST_CASE("an area below zero within three of its uncertainties is data") {
-  const auto rows = read_area_table("line,area,area_sd\na,-29.9,10\na,-0,\n", "t.csv");
+  const auto rows = read_area_table("line,area,area_sd\na,-29.9,10\na,-0,\n", "t.csv").rows;
   CHECK(rows[0].area == -29.9);
   CHECK_FALSE(std::signbit(*rows[1].area));
 }

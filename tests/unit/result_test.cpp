@@ -270,7 +270,7 @@ TEST_CASE("a report of many spots ends with their mean and what failed") {
   run.areas.push_back(area("2", "Si 2p metal", 10000.0));
   run.areas.push_back(area("3", "Si 2p oxide", 5.0));
   const std::string text = thickness_text(run, run_thickness(run));
-  CHECK(contains(text, "mean of 2:"));
+  CHECK(contains(text, "mean of 2 spots:"));
   CHECK(contains(text, "1 without an answer"));
   CHECK(contains(text, "no area of line"));
   CHECK(contains(check_text(run, run_thickness(run)), "2 thicknesses can be computed, 1 cannot"));

@@ -33,12 +33,14 @@ struct Header {
   std::array<std::optional<std::size_t>, kColumns> at;
   std::array<std::string, kColumns> name;  ///< as the file calls it
   std::vector<WideColumn> wide;
+  std::vector<std::string> unread;
 };
 
 /// One header field → our name for it.
 std::string our_name(const std::string& field, const AreaTableOptions& options) {
   for (const auto& [ours, theirs] : options.columns) {
     if (theirs == field) return ours;
+    if (options.wide && theirs + " sd" == field) return ours + " sd";
   }
   return field;
 }
@@ -68,7 +70,11 @@ Header read_header(const detail::CsvRow& row, const std::string& place, const Ar
   for (std::size_t i = 0; i < row.fields.size(); ++i) {
     const std::string name = our_name(row.fields[i], options);
     if (std::find(known.begin(), known.end(), name) == known.end()) {
-      throw InputError(where, "unknown column \"" + row.fields[i] + "\"", detail::name_hint(row.fields[i], known));
+      // Tables carry remarks and more; but what is nearly one of our names was meant to be it.
+      const std::string meant = detail::nearest_name(name, known);
+      if (!meant.empty()) throw InputError(where, "unknown column \"" + row.fields[i] + "\"", "did you mean \"" + meant + "\"?");
+      header.unread.push_back(row.fields[i]);
+      continue;
     }
     if (!positions.emplace(name, i).second) throw InputError(where, "column \"" + name + "\" stands twice in the header");
     const auto found = std::find(column_names().begin(), column_names().end(), name);
@@ -212,7 +218,7 @@ char separator_of(std::string_view csv) {
 
 }  // namespace
 
-std::vector<AreaRow> read_area_table(std::string_view csv, const std::string& place, const AreaTableOptions& options) {
+AreaTable read_area_table(std::string_view csv, const std::string& place, const AreaTableOptions& options) {
   std::vector<AreaRow> rows;
   Header header;
   std::size_t width = 0;
@@ -232,7 +238,7 @@ std::vector<AreaRow> read_area_table(std::string_view csv, const std::string& pl
   }, separator);
   if (width == 0) throw InputError(place, "the table is empty", "expected a header such as spot,emission_deg,line,area");
   if (rows.empty()) throw InputError(place, "the table has a header but no rows");
-  return rows;
+  return {std::move(rows), std::move(header.unread)};
 }
 
 }  // namespace pellicle

@@ -1,5 +1,7 @@
 #include "pellicle/io/result_json.hpp"
 
+#include <algorithm>
+
 #include <fmt/format.h>
 #include <nlohmann/json.hpp>
 
@@ -51,6 +53,15 @@ Json line_json(const Line& line) {
           {"transmission", maybe(line.transmission)}};
 }
 
+Json area_json(const Run& run, const AreaRow& row) {
+  Json area = {{"spot", row.spot}, {"emission_deg", or_null(row.emission_deg)}, {"line", row.line}, {"area", or_null(row.area)},
+               {"area_sd", or_null(row.area_sd)}, {"background_counts", or_null(row.counting.background_counts)},
+               {"dwell_s", or_null(row.counting.dwell_s)}, {"step_ev", or_null(row.counting.step_ev)}};
+  if (run.tables.size() > 1) area["table"] = run.tables[row.table];
+  return area;
+}
+
+/// All of a run but its areas.
 Json run_json(const Run& run) {
   Json record = Json::object();
   for (const std::string& key : record_keys()) {
@@ -72,14 +83,6 @@ Json run_json(const Run& run) {
                        : r.origin == ReferenceOrigin::computed ? Json("computed")
                                                                : Json("table:" + r.table_key);
     references.push_back({{"film", r.film}, {"substrate", r.substrate}, {"ratio", ratio}});
-  }
-  Json areas = Json::array();
-  for (const AreaRow& row : run.areas) {
-    Json area = {{"spot", row.spot}, {"emission_deg", or_null(row.emission_deg)}, {"line", row.line}, {"area", or_null(row.area)},
-                 {"area_sd", or_null(row.area_sd)}, {"background_counts", or_null(row.counting.background_counts)},
-                 {"dwell_s", or_null(row.counting.dwell_s)}, {"step_ev", or_null(row.counting.step_ev)}};
-    if (run.tables.size() > 1) area["table"] = run.tables[row.table];
-    areas.push_back(std::move(area));
   }
   Json correlations = Json::array();
   for (const AreaCorrelation& c : run.area_correlations) correlations.push_back({{"lines", {c.first, c.second}}, {"r", c.coefficient}});
@@ -112,21 +115,98 @@ Json run_json(const Run& run) {
                                               : Json(nullptr)},
           {"area_unit", area_unit_name(run.area_unit)},
           {"transmission", run.transmission_corrected ? "corrected" : "raw"},
-          {"correlation", correlations},
-          {"areas", areas}};
+          {"correlation", correlations}};
 }
 
-/// The frame that every result shares.
-std::string document(const char* command, const Json& inputs, Json results, Json summary, std::optional<std::uint64_t> seed = {}) {
-  Json doc = {{"schema", "pellicle.result/1"},
-              {"version", version()},
-              {"command", command},
-              {"inputs_sha256", detail::sha256_hex(inputs.dump())},
-              {"seed", or_null(seed)},
-              {"inputs", inputs},
-              {"results", std::move(results)},
-              {"summary", std::move(summary)}};
-  return doc.dump(2) + "\n";
+/// Inputs of a run on one line, the areas last.
+std::string compact_inputs(const Run& run) {
+  std::string text = run_json(run).dump();
+  text.back() = ',';
+  text += "\"areas\":[";
+  for (const AreaRow& row : run.areas) (text += area_json(run, row).dump()) += ',';
+  if (!run.areas.empty()) text.pop_back();
+  return text + "]}";
+}
+
+/// Writes an object member by member, and long arrays row by row: a document of a million results never stands in
+/// memory as a tree.
+class ObjectText {
+ public:
+  explicit ObjectText(std::size_t depth = 1) : margin_(2 * depth, ' ') {}
+
+  void add(const char* key, const Json& value) {
+    begin(key);
+    append_indented(value.dump(2));
+  }
+
+  /// Elements of an array, each from `row`(i): on a line of its own, or spread out.
+  template <typename Row>
+  void add_rows(const char* key, std::size_t size, bool one_line, Row&& row) {
+    begin(key);
+    if (size == 0) {
+      text_ += "[]";
+      return;
+    }
+    text_ += '[';
+    const std::string outer = margin_;
+    margin_ += "  ";
+    for (std::size_t i = 0; i < size; ++i) {
+      text_ += (i == 0 ? "\n" : ",\n") + margin_;
+      if (one_line) {
+        text_ += row(i).dump();
+      } else {
+        append_indented(row(i).dump(2));
+      }
+    }
+    margin_ = outer;
+    text_ += '\n' + margin_ + ']';
+  }
+
+  void add_object(const char* key, const ObjectText& object) {
+    begin(key);
+    text_ += object.text();
+  }
+
+  [[nodiscard]] std::string text() const { return "{" + text_ + '\n' + margin_.substr(2) + '}'; }
+
+ private:
+  void begin(const char* key) {
+    text_ += (text_.empty() ? "\n" : ",\n") + margin_ + '"' + key + "\": ";
+  }
+  void append_indented(const std::string& value) {
+    for (const char c : value) {
+      text_ += c;
+      if (c == '\n') text_ += margin_;
+    }
+  }
+
+  std::string margin_, text_;
+};
+
+void add_head(const char* command, const std::string& digest, std::optional<std::uint64_t> seed, ObjectText& doc) {
+  doc.add("schema", "pellicle.result/1");
+  doc.add("version", version());
+  doc.add("command", command);
+  doc.add("inputs_sha256", digest);
+  doc.add("seed", or_null(seed));
+}
+
+void add_inputs(const Run& run, ObjectText& doc) {
+  ObjectText inputs(2);
+  const Json head = run_json(run);
+  for (const auto& [key, value] : head.items()) inputs.add(key.c_str(), value);
+  inputs.add_rows("areas", run.areas.size(), true, [&](std::size_t i) { return area_json(run, run.areas[i]); });
+  doc.add_object("inputs", inputs);
+}
+
+/// A document without a run.
+std::string document(const char* command, const Json& inputs, const Json& results) {
+  ObjectText doc;
+  add_head(command, detail::sha256_hex(inputs.dump()), std::nullopt, doc);
+  doc.add("inputs", inputs);
+  doc.add("results", results);
+  doc.add("summary", nullptr);
+  return doc.text() + "\n";
 }
 
 Json length_used_json(const LengthUsed& used) {
@@ -201,6 +281,7 @@ Json thickness_result_json(const Run& run, const ThicknessResults& all, const Th
     result["monte_carlo_nm"]["mean"] = mc.mean_nm;
     result["monte_carlo_nm"]["draws"] = mc.draws;
     result["monte_carlo_nm"]["rejected"] = mc.rejected;
+    result["monte_carlo_nm"]["endless"] = mc.endless;
     result["monte_carlo_nm"]["gum_agrees"] = mc.gum_agrees;
   }
   result["repeatability_nm"] = t.budget.repeatability;
@@ -219,6 +300,7 @@ Json summary_json(const Run& run, const ThicknessResults& all, const ThicknessSu
           {"film_line", label_or_null(run, route.film_line)},
           {"substrate_line", label_or_null(run, route.substrate_line)},
           {"count", s.count},
+          {"thicknesses", s.thicknesses},
           {"bounds", s.bounds},
           {"failed", s.failed},
           {"mean_nm", any ? Json(s.mean_nm) : Json(nullptr)},
@@ -281,25 +363,28 @@ std::string lengths_json(const std::vector<LengthQuery>& queries) {
                        {"refusals", refusals},
                        {"findings", findings_json(q.length.findings)}});
   }
-  return document("lengths", inputs, results, nullptr);
+  return document("lengths", inputs, results);
 }
 
 std::string thickness_json(const Run& run, const ThicknessResults& results) {
-  Json rows = Json::array();
-  bool drawn = false;
-  for (const ThicknessResult& r : results.results) {
-    rows.push_back(thickness_result_json(run, results, r));
-    drawn = drawn || r.monte_carlo;
-  }
-  return document("thickness", run_json(run), rows, summaries_json(run, results), drawn ? std::optional(run.uncertainty.seed) : std::nullopt);
+  // More results than a person reads take one line each.
+  constexpr std::size_t kMostSpreadOut = 100;
+  const bool drawn = std::any_of(results.results.begin(), results.results.end(), [](const ThicknessResult& r) { return r.monte_carlo.has_value(); });
+  ObjectText doc;
+  add_head("thickness", inputs_sha256(run), drawn ? std::optional(run.uncertainty.seed) : std::nullopt, doc);
+  add_inputs(run, doc);
+  doc.add_rows("results", results.results.size(), results.results.size() > kMostSpreadOut,
+               [&](std::size_t i) { return thickness_result_json(run, results, results.results[i]); });
+  doc.add("summary", summaries_json(run, results));
+  return doc.text() + "\n";
 }
 
-std::string inputs_sha256(const Run& run) { return detail::sha256_hex(run_json(run).dump()); }
+std::string inputs_sha256(const Run& run) { return detail::sha256_hex(compact_inputs(run)); }
 
 std::string materials_json(const std::vector<Material>& materials) {
   Json rows = Json::array();
   for (const Material& m : materials) rows.push_back(material_json(m));
-  return document("materials", Json::object(), rows, nullptr);
+  return document("materials", Json::object(), rows);
 }
 
 std::string lines_json(const std::vector<CoreLevel>& levels, const PhotonSource* source) {
@@ -322,7 +407,7 @@ std::string lines_json(const std::vector<CoreLevel>& levels, const PhotonSource*
     rows.push_back(std::move(row));
   }
   const Json inputs = {{"source", source ? Json(source->name) : Json(nullptr)}};
-  return document("lines", inputs, rows, nullptr);
+  return document("lines", inputs, rows);
 }
 
 std::string calibrated_lengths_json() {
@@ -332,13 +417,13 @@ std::string calibrated_lengths_json() {
                     {"kinetic_energy_ev", row.kinetic_energy_ev}, {"length_nm", quantity_json(row.length_nm)},
                     {"source", row.source}, {"mark", row.mark}, {"note", row.note}});
   }
-  return document("lengths", Json::object(), rows, nullptr);
+  return document("lengths", Json::object(), rows);
 }
 
 std::string photon_sources_json() {
   Json rows = Json::array();
   for (const PhotonSource& s : photon_sources()) rows.push_back({{"name", s.name}, {"photon_energy_ev", s.photon_energy_ev}});
-  return document("lines", Json::object(), rows, nullptr);
+  return document("lines", Json::object(), rows);
 }
 
 std::string check_json(const Run& run, const ThicknessResults& results) {
@@ -354,7 +439,12 @@ std::string check_json(const Run& run, const ThicknessResults& results) {
   }
   const Json row = {{"ok", failures.empty()}, {"routes", routes}, {"areas", run.areas.size()}, {"results", results.results.size()},
                     {"failures", failures}, {"findings", findings_json(results.findings)}};
-  return document("check", run_json(run), Json::array({row}), nullptr);
+  ObjectText doc;
+  add_head("check", inputs_sha256(run), std::nullopt, doc);
+  add_inputs(run, doc);
+  doc.add("results", Json::array({row}));
+  doc.add("summary", nullptr);
+  return doc.text() + "\n";
 }
 
 std::string thickness_csv(const Run& run, const ThicknessResults& results) {

@@ -385,8 +385,11 @@ void read_data(TomlSection& root, const std::vector<std::string>& tables, Run& r
   }
   for (std::size_t i = 0; i < run.tables.size(); ++i) {
     options.table = i;
-    std::vector<AreaRow> rows = read_area_table(read_text_file(run.tables[i]), run.tables[i], options);
-    run.areas.insert(run.areas.end(), std::make_move_iterator(rows.begin()), std::make_move_iterator(rows.end()));
+    AreaTable table = read_area_table(read_text_file(run.tables[i]), run.tables[i], options);
+    run.areas.insert(run.areas.end(), std::make_move_iterator(table.rows.begin()), std::make_move_iterator(table.rows.end()));
+    for (std::string& column : table.unread_columns) {
+      if (std::find(run.unread_columns.begin(), run.unread_columns.end(), column) == run.unread_columns.end()) run.unread_columns.push_back(std::move(column));
+    }
   }
 }
 

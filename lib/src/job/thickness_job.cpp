@@ -296,6 +296,11 @@ Findings ThicknessResults::findings_of(const ThicknessResult& result) const {
 ThicknessResults run_thickness(const Run& run, const Progress& progress) {
   ThicknessResults all;
   all.routes = thickness_routes(run);
+  if (!run.unread_columns.empty()) {
+    std::string names;
+    for (const std::string& column : run.unread_columns) names += (names.empty() ? "\"" : ", \"") + column + "\"";
+    for (ThicknessRoute& route : all.routes) add_finding(route.findings, {"columns_unread", Severity::note, "columns of the table that are not used: " + names});
+  }
   const std::vector<Measurement> measurements = detail::collect_measurements(run);
   std::vector<RouteWork> work;
   std::optional<std::size_t> contamination_route;

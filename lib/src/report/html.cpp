@@ -52,9 +52,15 @@ std::string brief_of_one(const ThicknessResult& r) {
   }
   if (!r.thickness) return "<p class=\"answer\">no thickness</p><p>" + escaped(r.failure) + "</p>";
   const double sd = r.standard_uncertainty_nm();
-  std::string text = "<p class=\"answer\">" + quantity_html(r.thickness->value_nm, sd) + " nm</p><p>95 % interval " +
+  const Interval i = r.interval_nm();
+  const double value = r.thickness->value_nm, up = i.high95 - value, down = value - i.low95;
+  // Where ± one number would mislead, the ends stand in its place.
+  constexpr double kSymmetric = 1.25;
+  const bool symmetric = std::max(up, down) <= kSymmetric * std::min(up, down);
+  const std::string answer = symmetric ? quantity_html(value, sd) : data_html(value, value_words(value, sd));
+  std::string text = "<p class=\"answer\">" + answer + " nm</p><p>95 % interval " +
                      interval_html(r.interval_nm(), sd) + " nm (" + interval_method(r) +
-                     "); ± is the standard uncertainty.";
+                     (symmetric ? "); ± is the standard uncertainty." : "); it is not symmetric, so quote its two ends.");
   if (!r.thickness->scale_stated)
     text += " The thickness scale is not stated, so that these uncertainties leave it out.";
   return text + "</p>";
@@ -69,17 +75,18 @@ std::string brief_of_many(const ThicknessSummary& s) {
     const auto part = [](double value) { return "± " + data_html(value, rounded_text(value, 2)) + " nm "; };
     text =
         "<p class=\"answer\">" + data_html(s.mean_nm, value_words(s.mean_nm, sd)) + " nm</p><p>" +
-        (s.count == 1 ? std::string("The one result with a thickness") : fmt::format("Mean of {} results", s.count)) +
+        (s.count == 1 ? std::string("The one spot with a thickness") : fmt::format("Mean of {} spots", s.count)) +
+        (s.thicknesses > s.count ? ", the angles of each averaged first" : "") +
         ", with standard uncertainties<br>" + part(s.repeatability_of_mean_nm) + "repeatability of the mean<br>" +
-        (s.scale_stated ? part(s.scale_nm) + "thickness scale, common to all results, does not average"
+        (s.scale_stated ? part(s.scale_nm) + "thickness scale, common to all spots, does not average"
                         : std::string("thickness scale not stated")) +
         "</p>";
   }
   std::vector<std::string> rest;
   if (s.bounds > 0) rest.push_back(counted(s.bounds, "bound", "bounds"));
   if (s.failed > 0) rest.push_back(std::to_string(s.failed) + " without an answer");
-  if (!s.outliers.empty()) rest.push_back(counted(s.outliers.size(), "outlier", "outliers"));
-  if (!rest.empty()) text += "<p>Besides: " + joined(rest) + ".</p>";
+  if (!rest.empty()) text += "<p>Not in the mean: " + joined(rest) + ".</p>";
+  if (!s.outliers.empty()) text += "<p>In the mean, but far from the rest: " + counted(s.outliers.size(), "result", "results") + ".</p>";
   return text;
 }
 

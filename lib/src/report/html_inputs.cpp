@@ -91,7 +91,7 @@ void write_instrument(const Report& report, HtmlWriter& w) {
 namespace {
 
 /// Areas shown; they are inputs, and the JSON result repeats all of them.
-constexpr std::size_t kMostAreaRows = 40;
+constexpr std::size_t kMostAreaRows = 200;
 
 /// How many areas have an uncertainty of which origin.
 std::string area_uncertainty_words(const Run& run) {

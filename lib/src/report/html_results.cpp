@@ -107,20 +107,20 @@ void write_summary(const Report& report, std::size_t p, HtmlWriter& w) {
   const ThicknessSummary& s = report.all.summaries[p];
   if (report.of_route[p].size() < 2) return;
   w.begin_facts();
-  w.fact("Results", fmt::format("{}, {}, {} without an answer", counted(s.count, "thickness", "thicknesses"),
+  w.fact("Results", fmt::format("{}, {}, {} without an answer", counted(s.thicknesses, "thickness", "thicknesses"),
                                 counted(s.bounds, "bound", "bounds"), s.failed));
   if (s.count > 0) {
     const auto nm = [](double value, int digits) { return data_html(value, rounded_text(value, digits)) + " nm"; };
-    w.fact_html("Mean",
+    w.fact_html("Mean of " + counted(s.count, "spot", "spots"),
                 data_html(s.mean_nm, value_words(s.mean_nm, std::max(s.repeatability_of_mean_nm, s.scale_nm))) + " nm");
-    w.fact_html("Standard deviation between results",
-                s.standard_deviation_nm ? nm(*s.standard_deviation_nm, 2) : "one result only");
-    w.fact_html("Repeatability of the mean", nm(s.repeatability_of_mean_nm, 2) + ", falls with the number of results");
+    w.fact_html("Standard deviation between spots",
+                s.standard_deviation_nm ? nm(*s.standard_deviation_nm, 2) : "one spot only");
+    w.fact_html("Repeatability of the mean", nm(s.repeatability_of_mean_nm, 2) + ", falls with the number of spots");
     w.fact_html("Thickness scale",
-                s.scale_stated ? nm(s.scale_nm, 2) + ", common to all results, does not average" : "not stated");
+                s.scale_stated ? nm(s.scale_nm, 2) + ", common to all spots, does not average" : "not stated");
     std::vector<std::string> outliers;
     for (const std::size_t i : s.outliers) outliers.push_back(spot_words(report.run, report.all.results[i]));
-    w.fact("Outliers", outliers.empty() ? "none" : joined(outliers, 40));
+    w.fact("Outliers (in the mean)", outliers.empty() ? "none" : joined(outliers, 40) + "; modified z score above 3.5 and beyond three repeatabilities");
   }
   w.end_facts();
 }

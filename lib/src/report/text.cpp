@@ -8,6 +8,7 @@
 #include "pellicle/base/number.hpp"
 #include "pellicle/lines/photoionisation.hpp"
 #include "report/text_table.hpp"
+#include "report/wording.hpp"
 
 namespace pellicle {
 namespace {
@@ -25,16 +26,17 @@ std::string findings_text(const Findings& findings) {
   return text;
 }
 
-/// Each sentence once, whatever numbers raised it.
+/// Each sentence once, whatever numbers raised it; what matters most comes first.
 Findings distinct(const Findings& findings) {
   Findings once;
   for (const Finding& finding : findings) add_finding(once, finding);
+  std::stable_sort(once.begin(), once.end(), [](const Finding& a, const Finding& b) { return a.severity > b.severity; });
   return once;
 }
 
 std::string quantity_text(const Quantity& q, const char* unit) {
   return value_with_uncertainty(q.value, q.standard_uncertainty) + (*unit ? std::string(" ") + unit : std::string()) +
-         (q.standard_uncertainty ? "" : ", uncertainty not given");
+         (q.standard_uncertainty ? "" : " (uncertainty not given)");
 }
 
 std::string optional_text(const std::optional<double>& value, int digits) {
@@ -60,7 +62,9 @@ std::string route_text(const Run& run, const ThicknessRoute& route) {
   if (route.film_line && route.substrate_line) lines += " over " + quoted(route.substrate_line);
   if (route.contamination) lines += std::string(", route ") + contamination_route_name(*route.contamination);
   if (route.method != ThicknessMethod::ratio && !route.contamination) lines += std::string(", method ") + method_name(route.method);
-  std::string text = fmt::format("{} on {}: {}, {} ({} eV)\n", layer.id, run.sample.substrate.id, lines, run.source.name,
+  const std::size_t below = run.sample.position(route.layer) + 1;
+  const Material& under = below < run.sample.layers.size() ? run.sample.layers[below].material : run.sample.substrate;
+  std::string text = fmt::format("{} on {}: {}, {} ({} eV)\n", layer.id, under.id, lines, run.source.name,
                                  number_text(run.source.photon_energy_ev));
   text += fmt::format("  {:<17} {}\n", route.method == ThicknessMethod::ratio ? "reference ratio" : "reference", reference_text(route));
   text += fmt::format("  {:<17} {}\n", route.substrate_length ? "film line" : "attenuation", length_text(route.film_length));
@@ -85,13 +89,6 @@ std::string bound_text(const ThicknessBound& bound) {
   return std::string(bound.upper ? "<= " : ">= ") + rounded_text(bound.at95_nm, 3);
 }
 
-int decimals_for(double sd) { return sd > 0.0 ? std::clamp(1 - static_cast<int>(std::floor(std::log10(sd))), 0, 6) : 3; }
-
-std::string interval_text(const Interval& i, double sd) {
-  const int decimals = decimals_for(sd);
-  return fmt::format("{:.{}f} to {:.{}f}", i.low95, decimals, i.high95, decimals);
-}
-
 std::string one_result_text(const ThicknessResult& r) {
   std::string text = fmt::format("spot {}, emission {} deg from the normal (take-off {} deg from the surface)\n", r.spot,
                                  rounded_text(r.emission_deg, 4), rounded_text(90.0 - r.emission_deg, 4));
@@ -100,11 +97,11 @@ std::string one_result_text(const ThicknessResult& r) {
   const Thickness& t = *r.thickness;
   const double sd = r.standard_uncertainty_nm();
   text += fmt::format("  thickness         {} nm   (95 %: {} nm, {})\n", value_with_uncertainty(t.value_nm, sd),
-                      interval_text(r.interval_nm(), sd), r.monte_carlo ? "Monte Carlo" : "GUM");
+                      detail::interval_words(r.interval_nm(), sd), r.monte_carlo ? "Monte Carlo" : "GUM");
   if (r.monte_carlo) {
     text += fmt::format("  GUM               {} nm   (95 %: {} nm), {}\n", value_with_uncertainty(t.value_nm, t.standard_uncertainty_nm),
-                        interval_text(t.interval_nm, t.standard_uncertainty_nm),
-                        r.monte_carlo->gum_agrees ? "agrees with Monte Carlo" : "differs from Monte Carlo");
+                        detail::interval_words(t.interval_nm, t.standard_uncertainty_nm),
+                        r.monte_carlo->gum_agrees ? "agrees with Monte Carlo (JCGM 101, clause 8)" : "differs from Monte Carlo (JCGM 101, clause 8)");
   }
   if (!t.scale_stated) text += "  These uncertainties leave the thickness scale out: it is not stated.\n";
   text += fmt::format("  repeatability     {} nm, thickness scale: {}\n", rounded_text(t.budget.repeatability, 2), scale_text(t));
@@ -120,7 +117,8 @@ constexpr std::size_t kMostRows = 60;
 
 std::string many_results_text(const Run& run, const ThicknessResults& all, std::size_t route) {
   const bool tables = run.tables.size() > 1;
-  Rows rows = {{"spot", "emission deg", "thickness nm", "sd nm", "95 % nm", "repeatability nm", "ug/cm2", "findings"}};
+  const bool drawn = std::any_of(all.results.begin(), all.results.end(), [&](const ThicknessResult& r) { return r.route == route && r.monte_carlo; });
+  Rows rows = {{"spot", "emission deg", "thickness nm", "sd nm", drawn ? "95 % nm (Monte Carlo)" : "95 % nm (GUM)", "repeatability nm", "ug/cm2", "findings"}};
   if (tables) rows[0].insert(rows[0].begin(), "table");
   std::size_t left_out = 0;
   for (const ThicknessResult& r : all.results) {
@@ -134,13 +132,13 @@ std::string many_results_text(const Run& run, const ThicknessResults& all, std::
       const Finding& f = all.findings[i];
       if (f.severity != Severity::note && codes.find(f.code) == std::string::npos) codes += (codes.empty() ? "" : ", ") + f.code;
     }
-    std::vector<std::string> row = {r.spot, rounded_text(r.emission_deg, 4), kNone, kNone, kNone, kNone, kNone, codes};
+    std::vector<std::string> row = {r.spot, detail::angle_words(r.emission_deg), kNone, kNone, kNone, kNone, kNone, codes};
     if (r.thickness) {
       const Thickness& t = *r.thickness;
       const double sd = r.standard_uncertainty_nm();
-      row[2] = fmt::format("{:.{}f}", t.value_nm, decimals_for(sd));
+      row[2] = detail::value_words(t.value_nm, sd);
       row[3] = rounded_text(sd, 2);
-      row[4] = interval_text(r.interval_nm(), sd);
+      row[4] = detail::interval_words(r.interval_nm(), sd);
       row[5] = rounded_text(t.budget.repeatability, 2);
       row[6] = rounded_text(r.areal_density_ug_cm2->value, 3);
     } else if (r.bound) {
@@ -156,18 +154,28 @@ std::string many_results_text(const Run& run, const ThicknessResults& all, std::
   return text;
 }
 
-std::string summary_text(const ThicknessResults& all, const ThicknessSummary& s) {
-  if (s.count == 0) return fmt::format("no thickness from {} measurements ({} bounds)\n", s.failed + s.bounds, s.bounds);
-  std::string text = fmt::format("mean of {}: {} nm, repeatability of the mean {} nm", s.count, rounded_text(s.mean_nm, 4),
-                                 rounded_text(s.repeatability_of_mean_nm, 2));
-  if (s.standard_deviation_nm) text += fmt::format(", standard deviation between results {} nm", rounded_text(*s.standard_deviation_nm, 2));
+std::string summary_text(const Run& run, const ThicknessResults& all, const ThicknessSummary& s) {
+  if (s.count == 0) {
+    return fmt::format("no thickness from {}: {}, {} without an answer\n", detail::counted(s.failed + s.bounds, "measurement", "measurements"),
+                       detail::counted(s.bounds, "bound", "bounds"), s.failed);
+  }
+  std::string text = fmt::format("mean of {}: {} nm, repeatability of the mean {} nm", detail::counted(s.count, "spot", "spots"),
+                                 rounded_text(s.mean_nm, 4), rounded_text(s.repeatability_of_mean_nm, 2));
+  if (s.standard_deviation_nm) text += fmt::format(", standard deviation between spots {} nm", rounded_text(*s.standard_deviation_nm, 2));
   text += fmt::format(";\nthickness scale: {} (common to all, does not average)", s.scale_stated ? rounded_text(s.scale_nm, 2) + " nm" : "not stated");
-  if (s.bounds > 0) text += fmt::format("; {} bounds", s.bounds);
+  if (s.thicknesses > s.count) text += fmt::format(";\nthe {} thicknesses of each spot at its angles are averaged first", s.thicknesses);
+  if (s.bounds > 0) text += "; not in the mean: " + detail::counted(s.bounds, "bound", "bounds");
   if (s.failed > 0) text += fmt::format("; {} without an answer", s.failed);
   if (!s.outliers.empty()) {
-    text += "\noutliers:";
-    for (std::size_t k = 0; k < s.outliers.size() && k < 10; ++k) text += (k == 0 ? " " : ", ") + all.results[s.outliers[k]].spot;
-    if (s.outliers.size() > 10) text += fmt::format(" and {} more", s.outliers.size() - 10);
+    std::vector<std::string> spots;
+    for (const std::size_t i : s.outliers) {
+      const std::string spot = detail::spot_words(run, all.results[i]);
+      if (spots.empty() || spots.back() != spot) spots.push_back(spot);
+    }
+    constexpr std::size_t kMostNamed = 10;
+    text += "\nin the mean, but far from the rest:";
+    for (std::size_t k = 0; k < spots.size() && k < kMostNamed; ++k) text += (k == 0 ? " " : ", ") + spots[k];
+    if (spots.size() > kMostNamed) text += fmt::format(" and {} more", spots.size() - kMostNamed);
   }
   return text + "\n";
 }
@@ -216,7 +224,7 @@ std::string thickness_text(const Run& run, const ThicknessResults& results) {
         if (r.route == p) text += "\n" + one_result_text(r);
       }
     } else {
-      text += "\n" + many_results_text(run, results, p) + "\n" + summary_text(results, summary);
+      text += "\n" + many_results_text(run, results, p) + "\n" + summary_text(run, results, summary);
     }
   }
   const std::string findings = findings_text(distinct(results.findings));

@@ -18,6 +18,8 @@
 ///
 /// Only one of the three angle columns. Wide layout, one row per spot and angle: spot, an angle, and one column per
 /// line or component label with its area; optionally "<label> sd" with its standard uncertainty.
+///
+/// Other columns are left unread and named, unless their name is nearly one of these.
 
 #include <map>
 #include <string>
@@ -36,8 +38,13 @@ struct AreaTableOptions {
   std::size_t table = 0;                       ///< stored in every row
 };
 
+struct AreaTable {
+  std::vector<AreaRow> rows;
+  std::vector<std::string> unread_columns;  ///< as the header calls them
+};
+
 /// Reads a table. @param place file name, for messages
 /// @throws InputError naming file, line, column, what was wrong and what was expected
-[[nodiscard]] std::vector<AreaRow> read_area_table(std::string_view csv, const std::string& place, const AreaTableOptions& options = {});
+[[nodiscard]] AreaTable read_area_table(std::string_view csv, const std::string& place, const AreaTableOptions& options = {});
 
 }  // namespace pellicle

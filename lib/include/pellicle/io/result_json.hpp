@@ -1,6 +1,7 @@
 #pragma once
-/// Results as JSON, schema "pellicle.result/1". Every document carries schema, version, command, inputs with
-/// their SHA-256 digest, and results; a number that does not exist is null.
+/// Results as JSON, schema "pellicle.result/1". Every document carries schema, version, command, inputs, and results;
+/// a number that does not exist is null. `inputs_sha256` is the digest of `inputs` without blanks: settings of the
+/// uncertainty evaluation (seed, draws) are not in it.
 
 #include <string>
 #include <vector>

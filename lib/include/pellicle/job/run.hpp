@@ -102,6 +102,7 @@ struct Run {
   std::vector<AreaCorrelation> area_correlations;
   std::vector<std::string> tables;         ///< names of the area tables, for messages and results
   std::vector<AreaRow> areas;
+  std::vector<std::string> unread_columns; ///< columns of the tables that mean nothing to us
   UncertaintyOptions uncertainty;
   std::string place;                       ///< file name, for messages
 

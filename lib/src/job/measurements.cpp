@@ -173,10 +173,11 @@ std::vector<Measurement> collect_measurements(const Run& run) {
     std::size_t table;
     std::string_view spot;
     double emission_deg;
-    std::vector<const AreaRow*> rows;  // by component
   };
   std::vector<Group> groups;
+  std::vector<const AreaRow*> slots;  // by group, then by component
   std::unordered_map<Key, std::size_t, KeyHash> index;
+  std::size_t last = 0;
   for (const AreaRow& row : run.areas) {
     const auto label = label_index.find(row.line);
     if (label == label_index.end()) {
@@ -186,9 +187,17 @@ std::vector<Measurement> collect_measurements(const Run& run) {
       throw InputError(run.place_of(row), "the row states no emission angle", "add a column emission_deg, or emission_deg under [instrument]");
     }
     const double emission = row.emission_deg ? *row.emission_deg : *run.emission_deg;
-    const auto [found, fresh] = index.try_emplace({row.table, row.spot, emission}, groups.size());
-    if (fresh) groups.push_back({row.table, row.spot, emission, std::vector<const AreaRow*>(labels.size(), nullptr)});
-    const AreaRow*& slot = groups[found->second].rows[label->second];
+    // Rows of one spot mostly follow each other.
+    const bool same = !groups.empty() && groups[last].table == row.table && groups[last].emission_deg == emission && groups[last].spot == row.spot;
+    if (!same) {
+      const auto [found, fresh] = index.try_emplace({row.table, row.spot, emission}, groups.size());
+      last = found->second;
+      if (fresh) {
+        groups.push_back({row.table, row.spot, emission});
+        slots.resize(slots.size() + labels.size(), nullptr);
+      }
+    }
+    const AreaRow*& slot = slots[last * labels.size() + label->second];
     if (slot) {
       throw InputError(run.place_of(row), "spot \"" + row.spot + "\" has line \"" + row.line + "\" twice at " + number_text(emission) + " deg emission",
                        "give repeated measurements spots of their own");
@@ -203,27 +212,38 @@ std::vector<Measurement> collect_measurements(const Run& run) {
   std::vector<ComponentArea> areas;
   const bool may_correlate = lines_may_correlate(run);
   std::vector<std::vector<Part>> parts_of_lines(run.lines.size());
-  for (const Group& group : groups) {
+  std::vector<std::vector<std::size_t>> components(run.lines.size());
+  for (std::size_t l = 0; l < run.lines.size(); ++l) {
+    for (const Component& part : run.lines[l].components) components[l].push_back(label_index.at(part.label));
+  }
+  for (std::size_t g = 0; g < groups.size(); ++g) {
+    const Group& group = groups[g];
     Measurement m{group.table, std::string(group.spot), group.emission_deg, {}, {}};
     m.lines.resize(run.lines.size());
-    m.missing.resize(run.lines.size());
+    const auto miss = [&](std::size_t line, std::string why) {
+      m.missing.resize(run.lines.size());
+      m.missing[line] = std::move(why);
+    };
     for (std::size_t l = 0; l < run.lines.size(); ++l) {
       parts.clear();
       areas.clear();
-      for (const Component& part : run.lines[l].components) {
-        const AreaRow* row = group.rows[label_index.at(part.label)];
+      bool complete = true;
+      for (std::size_t c = 0; c < components[l].size() && complete; ++c) {
+        const Component& part = run.lines[l].components[c];
+        const AreaRow* row = slots[g * labels.size() + components[l][c]];
         if (!row) {
-          m.missing[l] = "spot \"" + m.spot + "\" has no area of line \"" + part.label + "\"";
-          break;
+          miss(l, "spot \"" + m.spot + "\" has no area of line \"" + part.label + "\"");
+          complete = false;
+          continue;
         }
         parts.push_back(&part);
         areas.push_back(component_area(run, *row));
         if (!areas.back().problem.empty()) {
-          m.missing[l] = "spot \"" + m.spot + "\": " + areas.back().problem;
-          break;
+          miss(l, "spot \"" + m.spot + "\": " + areas.back().problem);
+          complete = false;
         }
       }
-      if (m.missing[l].empty()) m.lines[l] = sum_components(run, parts, areas);
+      if (complete) m.lines[l] = sum_components(run, parts, areas);
       if (!may_correlate) continue;
       parts_of_lines[l].clear();
       for (std::size_t i = 0; i < areas.size(); ++i) parts_of_lines[l].push_back({parts[i], areas[i].area.sd});

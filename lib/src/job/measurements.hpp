@@ -37,7 +37,7 @@ struct Measurement {
   std::string spot;
   double emission_deg = 0.0;
   std::vector<std::optional<LineArea>> lines;  ///< by position in Run::lines; nothing: a component has no row
-  std::vector<std::string> missing;            ///< labels without a row, or without what "nd" needs
+  std::vector<std::string> missing;            ///< why, by position; empty when every line is there
   std::vector<LineCorrelation> correlations = {};
 };
 

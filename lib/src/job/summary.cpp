@@ -54,14 +54,19 @@ std::vector<SpotMean> spot_means(const std::vector<ThicknessResult>& results, st
   std::vector<SpotMean> spots;
   std::unordered_map<std::string, std::size_t> index;
   std::string key;
+  // Results of one angle are one for each spot, which need not be looked up.
+  const bool one_angle = std::all_of(results.begin(), results.end(), [&](const ThicknessResult& r) { return r.emission_deg == results.front().emission_deg; });
   for (std::size_t i = 0; i < results.size(); ++i) {
     const ThicknessResult& r = results[i];
     if (r.route != route || !r.thickness) continue;
-    key.assign(std::to_string(r.table)).push_back('\0');
-    key += r.spot;
-    const auto [found, fresh] = index.try_emplace(key, spots.size());
-    if (fresh) spots.emplace_back();
-    SpotMean& spot = spots[found->second];
+    std::size_t position = spots.size();
+    if (!one_angle) {
+      key.assign(std::to_string(r.table)).push_back('\0');
+      key += r.spot;
+      position = index.try_emplace(key, spots.size()).first->second;
+    }
+    if (position == spots.size()) spots.emplace_back();
+    SpotMean& spot = spots[position];
     spot.results.push_back(i);
     spot.value_nm += r.thickness->value_nm;
     spot.repeatability_nm += r.thickness->budget.repeatability * r.thickness->budget.repeatability;

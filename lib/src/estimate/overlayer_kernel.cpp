@@ -36,6 +36,7 @@
 
 #include "base/instruction_set.hpp"
 #include "estimate/overlayer_kernel.hpp"
+#include "pellicle/base/constants.hpp"
 
 HWY_BEFORE_NAMESPACE();
 namespace pellicle::detail {
@@ -449,6 +450,18 @@ std::size_t Solve(const KernelInput& in, std::size_t size, double* out, Status* 
   return left;
 }
 
+void CosinesOfDeg(const double* angle_deg, std::size_t size, double* out) {
+  const D d;
+  const V scale = hn::Set(d, kRadianPerDegree);
+  std::size_t i = 0;
+  for (; i + kLanes <= size; i += kLanes) hn::StoreU(hn::Cos(d, hn::Mul(hn::LoadU(d, angle_deg + i), scale)), d, out + i);
+  if (i == size) return;
+  HWY_ALIGN double last[kLanes] = {};
+  for (std::size_t k = i; k < size; ++k) last[k - i] = angle_deg[k];
+  hn::Store(hn::Cos(d, hn::Mul(hn::Load(d, last), scale)), d, last);
+  for (std::size_t k = i; k < size; ++k) out[k] = last[k - i];
+}
+
 #undef EACH
 
 }  // namespace HWY_NAMESPACE
@@ -463,7 +476,7 @@ std::span<const OverlayerKernelSet> overlayer_kernels() {
     std::vector<OverlayerKernelSet> kernels;
     [[maybe_unused]] const std::int64_t can_run = runnable_targets();
 #define ADD(target, set)                                                                \
-  if ((can_run & (target)) != 0) kernels.push_back({hwy::TargetName(target), set::Solve});
+  if ((can_run & (target)) != 0) kernels.push_back({hwy::TargetName(target), set::Solve, set::CosinesOfDeg});
 #if HWY_TARGETS & HWY_AVX3 & ~HWY_STATIC_TARGET
     ADD(HWY_AVX3, N_AVX3)
 #endif
@@ -474,7 +487,7 @@ std::span<const OverlayerKernelSet> overlayer_kernels() {
     ADD(HWY_SSE4, N_SSE4)
 #endif
 #undef ADD
-    kernels.push_back({hwy::TargetName(HWY_STATIC_TARGET), HWY_NAMESPACE::Solve});
+    kernels.push_back({hwy::TargetName(HWY_STATIC_TARGET), HWY_NAMESPACE::Solve, HWY_NAMESPACE::CosinesOfDeg});
     return kernels;
   }();
   return all;

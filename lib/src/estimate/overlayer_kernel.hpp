@@ -33,10 +33,14 @@ struct KernelInput {
 /// @return how many elements were left
 using OverlayerKernel = std::size_t (*)(const KernelInput& input, std::size_t size, double* out, Status* status);
 
-/// The kernel for one instruction set.
+/// cos of angles in degrees, error at most 4 ulp for |angle| <= 1e6.
+using CosineKernel = void (*)(const double* angle_deg, std::size_t size, double* out);
+
+/// The kernels for one instruction set.
 struct OverlayerKernelSet {
   const char* instruction_set;  ///< in Highway's words: "AVX3" (AVX-512), "AVX2", "SSE4", ...
   OverlayerKernel solve;
+  CosineKernel cosines_of_deg;
 };
 
 /// Those that this processor can run, the fastest first; at least one.

@@ -272,22 +272,50 @@ Thickness thickness_from_factors(const FilmMeasurement& m) {
   return result;
 }
 
-std::optional<double> thickness_of_draw(const FilmMeasurement& m, std::span<const double> inputs, double cone) noexcept {
-  double r = 1.0;
-  std::size_t i = 0;
+void thickness_of_draws(const FilmMeasurement& m, std::span<const std::span<const double>> inputs, double cone, std::span<double> out) {
+  const std::size_t size = out.size();
+  std::array<double, kBlockSize> r, unit;
+  std::size_t input = 0;
+  std::fill_n(r.begin(), size, 1.0);
   for (const SignalFactor& f : m.factors) {
-    apply(r, inputs[i++], f.power);
+    const std::span<const double> values = inputs[input++];
+    if (f.power == 1.0) {
+      for (std::size_t k = 0; k < size; ++k) r[k] *= values[k];
+    } else if (f.power == -1.0) {
+      for (std::size_t k = 0; k < size; ++k) r[k] /= values[k];
+    } else {
+      for (std::size_t k = 0; k < size; ++k) r[k] *= std::pow(values[k], f.power);
+    }
   }
-  const double film_length = inputs[i++];
-  const double rho = m.substrate_line_length_nm ? film_length / inputs[i++] : 1.0;
-  const double cosine = std::cos(inputs[i] * kRadianPerDegree);
-  if (!std::isfinite(r) || !(film_length > 0.0) || !(rho > 0.0) || !(cosine > 0.0)) return std::nullopt;
-  if (m.method == ThicknessMethod::substrate_line && r > 1.0) return 0.0;
-  const bool of_film = m.method == ThicknessMethod::film_line || m.method == ThicknessMethod::atomic_percent;
-  if (of_film && r >= 1.0) return std::numeric_limits<double>::infinity();
-  const std::optional<Reduced> reduced = solve_reduced(m.method, r, rho);
-  if (!reduced) return std::nullopt;
-  return cone * reduced->x * film_length * cosine;
+  const std::span<const double> film_length = inputs[input++];
+  const std::span<const double> substrate_length = m.substrate_line_length_nm ? inputs[input++] : film_length;
+  detail::overlayer_kernel().cosines_of_deg(inputs[input].data(), size, unit.data());
+  for (std::size_t k = 0; k < size; ++k) unit[k] *= cone * film_length[k];
+
+  constexpr double kNone = std::numeric_limits<double>::quiet_NaN();
+  switch (m.method) {
+    case ThicknessMethod::ratio: break;
+    case ThicknessMethod::substrate_line:
+      for (std::size_t k = 0; k < size; ++k) out[k] = unit[k] > 0.0 && r[k] > 0.0 ? std::max(-std::log(r[k]), 0.0) * unit[k] : kNone;
+      return;
+    case ThicknessMethod::film_line:
+    case ThicknessMethod::atomic_percent:
+      for (std::size_t k = 0; k < size; ++k) {
+        const double x = r[k] < 1.0 ? -std::log1p(-r[k]) : std::numeric_limits<double>::infinity();
+        out[k] = unit[k] > 0.0 && r[k] >= 0.0 ? x * unit[k] : kNone;
+      }
+      return;
+  }
+  const double one = 1.0;
+  const bool equal_lengths = !m.substrate_line_length_nm.has_value();
+  std::array<Status, kBlockSize> status;
+  const detail::KernelInput input_of_kernel{{r.data(), 1}, {&one, 0}, {film_length.data(), 1}, {substrate_length.data(), 1}, {unit.data(), 1}, equal_lengths};
+  if (detail::overlayer_kernel().solve(input_of_kernel, size, out.data(), status.data()) == 0) return;
+  for (std::size_t k = 0; k < size; ++k) {
+    if (status[k] == Status::ok) continue;
+    const detail::RootResult root = unit[k] > 0.0 ? detail::overlayer_root_as_in_arrays(r[k], film_length[k] / substrate_length[k]) : detail::RootResult{0.0, Status::invalid_input};
+    out[k] = root.status == Status::ok ? root.x * unit[k] : kNone;
+  }
 }
 
 Thickness thickness_from_ratio(const RatioMeasurement& m) {

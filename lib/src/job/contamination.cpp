@@ -1,6 +1,7 @@
 #include "job/contamination.hpp"
 
 #include <cmath>
+#include <set>
 
 #include "job/length_choice.hpp"
 #include "job/reference.hpp"
@@ -57,9 +58,16 @@ void add_carbon_reference(const Run& run, const Line& carbon, ThicknessRoute& ro
   }
   const std::string below = run.sample.layers.size() > 1 ? run.sample.layers[1].name : std::string(kSubstrate);
   const Material& solid = run.sample.material(below);
+  // An element counts where a line shows it, above and below the bar of the ratio.
+  std::set<std::string> shown;
+  for (const Line& line : run.lines) {
+    if (line.from != carbon.from && line.level) shown.insert(line.level->element->symbol);
+  }
   double atoms_below = 0.0;
-  for (const FormulaTerm& term : solid.formula.terms()) {
-    if (term.element->z > 1) atoms_below += atom_density_per_nm3(solid, term.element->symbol);
+  for (const std::string& symbol : shown) atoms_below += atom_density_per_nm3(solid, symbol);
+  if (!(atoms_below > 0.0)) {
+    throw InputError(run.place, "no line shows an element of " + solid.id + ", the solid just below the contamination",
+                     "declare its lines, or choose another contamination route");
   }
   const double ratio = atom_density_per_nm3(run.sample.material(carbon.from), "C") / atoms_below;
   const double density = assumed_value("film_density_relative_sd");
@@ -74,11 +82,13 @@ CarbonBalance carbon_balance(const Run& run, const ThicknessRoute& route) {
   CarbonBalance balance;
   std::vector<std::string> applied;
   Findings noted_by_the_route;
+  std::set<std::pair<std::string, std::string>> counted;
   for (std::size_t l = 0; l < run.lines.size(); ++l) {
     const Line& line = run.lines[l];
     if (l == *route.film_line) {
       balance.response = response_per_atom(run, line, applied, noted_by_the_route);
-    } else if (line.from != route.layer) {
+    } else if (line.from != route.layer && line.level && counted.emplace(line.level->element->symbol, line.from).second) {
+      // A second level of an element in the same layer shows the same atoms once more.
       balance.below.push_back({l, response_per_atom(run, line, applied, noted_by_the_route),
                                choose_length(run, line, route.layer, line.kinetic_energy_ev).length_nm.value});
     }

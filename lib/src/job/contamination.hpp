@@ -3,8 +3,9 @@
 ///
 ///   (A_C/q_C) / Σ A_l/q_l = R₀ [1 − exp(−x)] exp(ϱ x),  R₀ = N_C/N
 ///
-/// q: response per atom, IMFP included; N_C carbon atoms per volume of the contamination, N atoms (hydrogen aside) of the
-/// solid just below it. @cite smith2005
+/// q: response per atom, IMFP included; N_C carbon atoms per volume of the contamination, N atoms per volume of the solid
+/// just below it, of the elements that the lines show. Of several levels of an element in a layer the first counts.
+/// @cite smith2005
 
 #include <string>
 #include <vector>

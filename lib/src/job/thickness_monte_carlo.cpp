@@ -1,19 +1,13 @@
 #include "job/thickness_monte_carlo.hpp"
 
 #include <algorithm>
-#include <array>
 #include <atomic>
 #include <cmath>
-#include <limits>
-#include <stdexcept>
 
 #include "pellicle/uncertainty/monte_carlo.hpp"
 
 namespace pellicle::detail {
 namespace {
-
-/// More inputs than any route has.
-constexpr std::size_t kMostInputs = 32;
 
 Distribution area_input(const Quantity& q) { return Distribution::truncated_normal(q.value, q.sd()); }
 
@@ -33,7 +27,6 @@ Drawn draw(const FilmMeasurement& m, const UncertaintyOptions& options, std::uin
   if (m.substrate_line_length_nm) add(kSubstrateLengthName, positive_input(*m.substrate_line_length_nm));
   // An angle drawn across the normal is the same angle on its other side; cos does not see the sign.
   add(kEmissionName, Distribution::normal(m.emission_deg.value, m.emission_deg.sd()));
-  if (inputs.size() > kMostInputs) throw std::logic_error("a measurement with more inputs than draws are made for");
 
   std::vector<Correlation> correlations;
   const auto position = [&](const std::string& name) {
@@ -46,16 +39,12 @@ Drawn draw(const FilmMeasurement& m, const UncertaintyOptions& options, std::uin
   const double endless_nm = 1e6 * m.film_line_length_nm.value;
   std::atomic<std::size_t> endless = 0;
   const BlockModel model = [&](std::span<const std::span<const double>> columns, std::span<double> out) {
-    std::array<double, kMostInputs> values_of_draw;
-    const std::span<const double> values(values_of_draw.data(), columns.size());
+    thickness_of_draws(m, columns, cone, out);
     std::size_t endless_here = 0;
-    for (std::size_t i = 0; i < out.size(); ++i) {
-      for (std::size_t k = 0; k < columns.size(); ++k) values_of_draw[k] = columns[k][i];
-      out[i] = thickness_of_draw(m, values, cone).value_or(std::numeric_limits<double>::quiet_NaN());
-      if (std::isinf(out[i])) {
-        out[i] = endless_nm;
-        ++endless_here;
-      }
+    for (double& t : out) {
+      if (!std::isinf(t)) continue;
+      t = endless_nm;
+      ++endless_here;
     }
     endless += endless_here;
   };

@@ -4,6 +4,7 @@
 #include <cmath>
 #include <utility>
 
+#include "base/exponential.hpp"
 #include "uncertainty/normal_tail.hpp"
 
 namespace pellicle::detail {
@@ -38,11 +39,14 @@ std::vector<double> slopes(const std::vector<double>& y) {
 }  // namespace
 
 Sampler::Sampler(const Distribution& distribution) : distribution_(distribution) {
-  if (!is_tabulated(distribution.kind())) return;
+  const Distribution& d = distribution;
+  // Cut off beyond what is drawn, a normal distribution is whole and needs no table.
+  whole_ = d.kind() == Kind::truncated_normal && d.a_ >= kLastZ * d.b_;
+  if (whole_ || !is_tabulated(d.kind())) return;
   std::vector<double> values(kIntervals + 1);
   for (int i = 0; i <= kIntervals; ++i) {
     const double x = distribution.at_normal(std::min(kLastZ, i * kStep - kLastZ));
-    values[static_cast<std::size_t>(i)] = is_tabulated_as_log(distribution.kind()) ? std::log(x) : x;
+    values[static_cast<std::size_t>(i)] = is_tabulated_as_log(distribution_.kind()) ? std::log(x) : x;
   }
   std::vector<double> slope = slopes(values);
   table_.emplace(std::move(values), std::move(slope), -kLastZ, kStep);
@@ -74,11 +78,14 @@ void Sampler::from_normal(std::span<double> numbers) const {
     for (double& x : numbers) x = mean + sd * x;
   } else if (d.kind() == Kind::lognormal) {
     const double mean = d.a_, sd = d.b_;
-    for (double& x : numbers) x = std::exp(mean + sd * x);
+    exponential_of_linear(mean, sd, numbers);
+  } else if (whole_) {
+    const double mean = d.a_, sd = d.b_;
+    for (double& x : numbers) x = mean + sd * std::min(kLastZ, std::max(-kLastZ, x));
   } else if (table_) {
     for (double& x : numbers) x = (*table_)(std::clamp(x, -kLastZ, kLastZ));
     if (is_tabulated_as_log(d.kind())) {
-      for (double& x : numbers) x = std::exp(x);
+      exponential_of_linear(0.0, 1.0, numbers);
     } else if (d.kind() == Kind::truncated_normal) {
       for (double& x : numbers) x = std::max(0.0, x);
     }

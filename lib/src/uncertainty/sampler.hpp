@@ -27,6 +27,7 @@ class Sampler {
 
  private:
   Distribution distribution_;
+  bool whole_ = false;  ///< a truncated normal of which nothing is cut off
   std::optional<boost::math::interpolators::cardinal_cubic_hermite<std::vector<double>>> table_;
 };
 

@@ -120,12 +120,13 @@ inline constexpr const char* kEmissionName = "emission_deg";
 /// @cite hill1976 jcgm100
 [[nodiscard]] Thickness thickness_from_factors(const FilmMeasurement& measurement);
 
-/// t of one draw of all inputs, without uncertainty; nothing where there is no answer. Order of the inputs: factors,
-/// film line length, substrate line length (if any), emission angle. A single line beyond its reference has its limit:
-/// 0 for the substrate's line, +infinity for the film's.
+/// t [nm] of many draws of all inputs, without uncertainty; NaN where there is no answer. Order of the inputs: factors,
+/// film line length, substrate line length (if any), emission angle; inputs[i][k] is input i of draw k. A single line
+/// beyond its reference has its limit: 0 for the substrate's line, +infinity for the film's.
+/// @param out as many as there are draws, at most kBlockSize
 /// @param cone_factor t over what the axis alone gives, from cone_factor()
-[[nodiscard]] std::optional<double> thickness_of_draw(const FilmMeasurement& measurement, std::span<const double> inputs,
-                                                      double cone_factor) noexcept;
+void thickness_of_draws(const FilmMeasurement& measurement, std::span<const std::span<const double>> inputs, double cone_factor,
+                        std::span<double> out);
 
 /// What the acceptance cone does to the thickness: t with the cone over t of the axis, near 1.
 /// @throws as thickness_from_factors()

@@ -40,8 +40,9 @@ std::vector<double> slopes(const std::vector<double>& y) {
 
 Sampler::Sampler(const Distribution& distribution) : distribution_(distribution) {
   const Distribution& d = distribution;
-  // Cut off beyond what is drawn, a normal distribution is whole and needs no table.
-  whole_ = d.kind() == Kind::truncated_normal && d.a_ >= kLastZ * d.b_;
+  // Cut off far beyond what is drawn (1e-33 of it is missing), a normal distribution needs no table.
+  constexpr double kWholeFrom = 12.0;
+  whole_ = d.kind() == Kind::truncated_normal && d.a_ >= kWholeFrom * d.b_;
   if (whole_ || !is_tabulated(d.kind())) return;
   std::vector<double> values(kIntervals + 1);
   for (int i = 0; i <= kIntervals; ++i) {

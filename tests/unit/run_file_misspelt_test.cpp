@@ -40,4 +40,20 @@ TEST_CASE("a misspelt key is called unknown and not missing") {
   }
 }
 
+TEST_CASE("letters beyond ASCII stand in quotation marks and comments only") {
+  const test::ScratchFolder folder;
+  folder.write("areas.csv", starter_areas());
+  const std::string starter = starter_run("areas.csv");
+  const auto parse = [&](const std::string& head) { return parse_run(head + starter, folder.file("run.toml")); };
+  for (const std::string bare : {"µ = 1\n", "a = µ\n", "\"a\" µ = 1\n", "'' µ\n", "\"\\\"\" µ\n", "\"\"\"\n\"\"\" µ"}) {
+    const auto error = test::error_of<InputError>([&] { (void)parse(bare); });
+    CHECK_MESSAGE(error.fact() == "a character beyond ASCII stands outside quotation marks", bare);
+  }
+  CHECK(test::error_of<InputError>([&] { (void)parse("# µ\n\n  ä\n"); }).where().ends_with("run.toml:3:3"));
+  // Where they may stand, they do.
+  std::string text = starter;
+  text.replace(text.find("title = \""), 9, "# Å, 'µ\ntitle = \"µ \\\" ä' # ");
+  CHECK(parse_run(text, folder.file("run.toml")).title.starts_with("µ \" ä' # "));
+}
+
 }  // TEST_SUITE("run file")

@@ -35,9 +35,47 @@ double finite_number(const toml::node& node, const std::string& where) {
   return *value;
 }
 
+/// Characters beyond ASCII stand in quotation marks and comments only. toml++ 3.0 relies on that without checking it:
+/// a letter such as µ between keys is undefined behaviour there.
+void refuse_bare_letters(std::string_view text, const std::string& file) {
+  if (text.starts_with("\xEF\xBB\xBF")) text.remove_prefix(3);  // byte-order mark
+  std::string_view quote;  // that closes what is open; "#" for a comment, which the line closes
+  std::size_t line = 1, line_begin = 0;
+  for (std::size_t i = 0; i < text.size(); ++i) {
+    const char c = text[i];
+    const bool multi_line = quote.size() == 3;
+    if (c == '\n') {
+      ++line;
+      line_begin = i + 1;
+      // A string that the line ends is an error which the parser names.
+      if (!multi_line) quote = {};
+    } else if (quote == "#") {
+      continue;
+    } else if (!quote.empty()) {
+      if (c == '\\' && quote.front() == '"') {
+        // What follows is escaped; a line break is still counted.
+        if (i + 1 < text.size() && text[i + 1] != '\n') ++i;
+      } else if (text.substr(i).starts_with(quote)) {
+        i += quote.size() - 1;
+        quote = {};
+      }
+    } else if (c == '#') {
+      quote = "#";
+    } else if (c == '"' || c == '\'') {
+      const std::string_view three = c == '"' ? "\"\"\"" : "'''";
+      quote = text.substr(i).starts_with(three) ? three : three.substr(0, 1);
+      i += quote.size() - 1;
+    } else if (static_cast<unsigned char>(c) >= 0x80) {
+      throw InputError(file + ":" + std::to_string(line) + ":" + std::to_string(i - line_begin + 1),
+                       "a character beyond ASCII stands outside quotation marks", "put text into quotation marks");
+    }
+  }
+}
+
 }  // namespace
 
 toml::table parse_toml(std::string_view text, const std::string& file) {
+  refuse_bare_letters(text, file);
   try {
     return toml::parse(text, file);
   } catch (const toml::parse_error& e) {

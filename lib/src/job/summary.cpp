@@ -116,7 +116,7 @@ void compare_spots(const std::vector<SpotMean>& spots, ThicknessResults& all, Fi
   }
   const Scatter scatter = scatter_of(members);
   if (scatter.chi_square <= scatter.limit) return;
-  const std::uint32_t finding = pool.add({"spots_differ", Severity::note,
+  const std::uint32_t finding = pool.add({"spots_differ", Severity::warning,
                                           "the spots scatter more than their repeatability explains: the film differs from spot to spot, so "
                                           "look at them one by one before quoting their mean (value: χ²)",
                                           scatter.chi_square, scatter.limit});

@@ -193,6 +193,7 @@ void write_repeat(const Report& report, HtmlWriter& w) {
   w.end_facts();
   if (!report.origin.command.empty())
     w.raw("<p>Command:</p>\n<pre><code>" + escaped(report.origin.command) + "</code></pre>\n");
+  w.raw("<div class=\"signature\"><div>Analyst</div><div>Date</div><div>Signature</div></div>\n");
   w.end_section();
 }
 

@@ -361,8 +361,7 @@ void write_densities(const Report& report, HtmlWriter& w) {
   w.table("Densities used", {"Layer", "Material", "Density (g/cm³)", "Source", "Emitting atoms (1/nm³)"}, rows);
   w.paragraph(
       "A thickness is an equivalent thickness: that of a film of the density stated here. A porous or hydrated film is "
-      "thicker; its areal "
-      "density is what was measured.");
+      "thicker for the same amount of matter.");
   w.end_section();
 }
 

@@ -55,15 +55,19 @@ figure svg { display: block; max-width: 100%; height: auto; }
 figcaption { color: var(--soft); font-size: .92rem; margin-top: .4rem; max-width: 46rem; }
 code, pre { font: .88rem/1.5 ui-monospace, "Cascadia Mono", Menlo, Consolas, "DejaVu Sans Mono", monospace; }
 pre { background: var(--wash); padding: .8rem 1rem; white-space: pre-wrap; overflow-wrap: anywhere; margin: .6rem 0; }
+.signature { display: grid; grid-template-columns: 1fr 1fr 1fr; gap: 0 1.5rem; margin-top: 3.2rem; }
+.signature div { border-top: 1px solid var(--ink); padding-top: .3rem; color: var(--soft); }
 footer { color: var(--soft); padding-top: 1.4rem; padding-bottom: 2.5rem; font-size: .92rem; }
 @media (max-width: 40rem) { dl > div { grid-template-columns: 1fr; } }
-@page { size: A4; margin: 17mm 16mm; }
+@page { size: A4; margin: 17mm 16mm; @bottom-right { content: counter(page) " / " counter(pages); font: 8pt sans-serif; } }
 @media print {
-  body { font-size: 10pt; }
+  html { font-size: 9.5pt; }
+  body { font-size: 1rem; }
   main, header, footer { max-width: none; padding-left: 0; padding-right: 0; }
   header { padding-top: 0; }
   h1 { font-size: 18pt; }
   h2 { margin-top: 1.5rem; }
+  .signature { break-inside: avoid; }
   h2, h3, caption { break-after: avoid; }
   tr, figure, .brief, .short, dl > div, li { break-inside: avoid; }
   thead { display: table-header-group; }

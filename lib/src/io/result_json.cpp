@@ -7,6 +7,7 @@
 
 #include "io/digest.hpp"
 #include "pellicle/base/number.hpp"
+#include "pellicle/base/parallel.hpp"
 #include "pellicle/base/version.hpp"
 #include "pellicle/lines/photoionisation.hpp"
 #include "pellicle/transport/calibrated_length.hpp"
@@ -449,30 +450,48 @@ std::string check_json(const Run& run, const ThicknessResults& results) {
 
 std::string thickness_csv(const Run& run, const ThicknessResults& results) {
   const bool tables = run.tables.size() > 1;
-  fmt::memory_buffer csv;
-  const auto out = std::back_inserter(csv);
-  fmt::format_to(out, "{}spot,emission_deg,layer,method,film_line,substrate_line,thickness_nm,sd_nm,low95_nm,high95_nm,bound,"
-                      "repeatability_nm,scale_nm,areal_density_ug_cm2,findings,failure\n", tables ? "table," : "");
-  const auto label = [&](const std::optional<std::size_t>& line) { return line ? csv_cell(run.lines[*line].label) : std::string(); };
-  for (const ThicknessResult& r : results.results) {
-    const ThicknessRoute& route = results.routes[r.route];
-    if (tables) fmt::format_to(out, "{},", csv_cell(run.tables[r.table]));
-    fmt::format_to(out, "{},{},{},{},{},{},", csv_cell(r.spot), r.emission_deg, csv_cell(route.layer), method_name(route.method),
-                   label(route.film_line), label(route.substrate_line));
-    if (r.thickness) {
-      const Thickness& t = *r.thickness;
-      const Interval i = r.interval_nm();
-      fmt::format_to(out, "{},{},{},{},,{},{},{},", t.value_nm, r.standard_uncertainty_nm(), i.low95, i.high95, t.budget.repeatability,
-                     t.scale_stated ? number_text(t.budget.scale) : std::string(), r.areal_density_ug_cm2->value);
-    } else if (r.bound) {
-      fmt::format_to(out, "{},,,,{},,,,", r.bound->at95_nm, r.bound->upper ? "upper95" : "lower95");
-    } else {
-      fmt::format_to(out, ",,,,,,,,");
-    }
-    for (std::size_t k = 0; k < r.findings.size(); ++k) fmt::format_to(out, "{}{}", k == 0 ? "" : " ", results.findings[r.findings[k]].code);
-    fmt::format_to(out, ",{}\n", csv_cell(r.failure));
+  // What all rows of a route share, written once.
+  std::vector<std::string> shared;
+  for (const ThicknessRoute& route : results.routes) {
+    const auto label = [&](const std::optional<std::size_t>& line) { return line ? csv_cell(run.lines[*line].label) : std::string(); };
+    shared.push_back(fmt::format("{},{},{},{}", csv_cell(route.layer), method_name(route.method), label(route.film_line), label(route.substrate_line)));
   }
-  return fmt::to_string(csv);
+  std::vector<std::string> parts((results.results.size() + kBlockSize - 1) / kBlockSize);
+  for_each_block(results.results.size(), [&](std::size_t begin, std::size_t end) {
+    fmt::memory_buffer csv;
+    const auto out = std::back_inserter(csv);
+    for (std::size_t n = begin; n < end; ++n) {
+      const ThicknessResult& r = results.results[n];
+      if (tables) fmt::format_to(out, "{},", csv_cell(run.tables[r.table]));
+      fmt::format_to(out, "{},{},{},", csv_cell(r.spot), r.emission_deg, shared[r.route]);
+      if (r.thickness) {
+        const Thickness& t = *r.thickness;
+        const Interval i = r.interval_nm();
+        fmt::format_to(out, "{},{},{},{},,{},", t.value_nm, r.standard_uncertainty_nm(), i.low95, i.high95, t.budget.repeatability);
+        if (t.scale_stated) fmt::format_to(out, "{}", t.budget.scale);
+        fmt::format_to(out, ",{},", r.areal_density_ug_cm2->value);
+      } else if (r.bound) {
+        fmt::format_to(out, "{},,,,{},,,,", r.bound->at95_nm, r.bound->upper ? "upper95" : "lower95");
+      } else {
+        fmt::format_to(out, ",,,,,,,,");
+      }
+      for (std::size_t k = 0; k < r.findings.size(); ++k) {
+        if (k > 0) csv.push_back(' ');
+        csv.append(results.findings[r.findings[k]].code);
+      }
+      csv.push_back(',');
+      csv.append(csv_cell(r.failure));
+      csv.push_back('\n');
+    }
+    parts[begin / kBlockSize] = fmt::to_string(csv);
+  });
+  std::string text = fmt::format("{}spot,emission_deg,layer,method,film_line,substrate_line,thickness_nm,sd_nm,low95_nm,high95_nm,bound,"
+                                 "repeatability_nm,scale_nm,areal_density_ug_cm2,findings,failure\n", tables ? "table," : "");
+  std::size_t size = text.size();
+  for (const std::string& part : parts) size += part.size();
+  text.reserve(size);
+  for (const std::string& part : parts) text += part;
+  return text;
 }
 
 }  // namespace pellicle

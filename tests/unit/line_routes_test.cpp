@@ -166,6 +166,19 @@ TEST_CASE("a layer of known thickness above is taken out of a single line") {
   CHECK(close_to(only_thickness_nm(below), expected, rel(kRounding)));
   // ∂t/∂d = −L_film/L_carbon.
   CHECK(close_to(contribution_nm(thickness_at(below, 0), "contamination_correction"), 0.1 * 2.5 / 3.6, rel(1e-9)));
+  // t = −L cosθ ln(I/I∞) − d L/L_carbon: only the first part goes with the angle, by tanθ of itself.
+  const double degree = std::numbers::pi / 180.0;
+  CHECK(close_to(contribution_nm(thickness_at(below, 0), "emission_deg"), (expected + 0.9 * 2.5 / 3.6) * degree, rel(1e-9)));
+  // So do draws: with the angle alone uncertain, their spread is that.
+  text.options += "interval = \"monte-carlo\"\ndraws = 200000\n";
+  text.contaminant = "thickness_nm = { value = 0.9, sd = 0 }";
+  text.lines = line("metal", "Si 2p", "substrate", "reference_area = { value = 1000, sd = 0 }\nlength_nm = { film = { value = 2.5, sd = 0 }, carbon = { value = 3.6, sd = 0 } }");
+  std::string toml = text.toml();
+  toml.erase(toml.find("interval = \"gum\"\n"), 17);
+  const ThicknessResults drawn = thicknesses(toml, "line,area,area_sd\nmetal," + number(650.0 * loss) + ",1e-6\n");
+  REQUIRE_MESSAGE(drawn.results[0].monte_carlo.has_value(), drawn.results[0].failure);
+  CHECK(close_to(drawn.results[0].monte_carlo->standard_uncertainty_nm, (expected + 0.9 * 2.5 / 3.6) * degree, rel(0.02)));
+  text.contaminant = "thickness_nm = { value = 0.9, sd = 0.1 }";
   text.lines = line("oxide", "Si 2p", "film", "reference_area = 1000\nlength_nm = { film = 2.5, carbon = 3.6 }");
   text.options = "method = \"film-line\"\n";
   CHECK(close_to(only_thickness_nm(thicknesses(text.toml(), table({{"oxide", 350.0 * loss}}))), expected, rel(kRounding)));

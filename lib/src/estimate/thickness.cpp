@@ -174,8 +174,9 @@ Point differentiate(const FilmMeasurement& m, const Reduced& reduced, double con
     p.inputs.push_back({kLengthName, film.value, film.sd(), by_film_length, ContributionKind::scale});
   }
   // A stage offset is the same for every spot of a mount, so the angle counts as common, not as repeatability.
-  p.inputs.push_back({kEmissionName, m.emission_deg.value, m.emission_deg.sd(), -p.t * std::tan(angle) * kRadianPerDegree,
-                      ContributionKind::scale});
+  // t ∝ cosθ at constant r, and r itself changes with the way through layers above.
+  const double by_angle = (unit * reduced.by_log_r * m.log_of_layers_above - p.t) * std::tan(angle) * kRadianPerDegree;
+  p.inputs.push_back({kEmissionName, m.emission_deg.value, m.emission_deg.sd(), by_angle, ContributionKind::scale});
   return p;
 }
 
@@ -290,6 +291,10 @@ void thickness_of_draws(const FilmMeasurement& m, std::span<const std::span<cons
   const std::span<const double> film_length = inputs[input++];
   const std::span<const double> substrate_length = m.substrate_line_length_nm ? inputs[input++] : film_length;
   detail::overlayer_kernel().cosines_of_deg(inputs[input].data(), size, unit.data());
+  if (m.log_of_layers_above != 0.0) {
+    const double at_estimate = std::cos(m.emission_deg.value * kRadianPerDegree);
+    for (std::size_t k = 0; k < size; ++k) r[k] *= std::exp(m.log_of_layers_above * (at_estimate / unit[k] - 1.0));
+  }
   for (std::size_t k = 0; k < size; ++k) unit[k] *= cone * film_length[k];
 
   constexpr double kNone = std::numeric_limits<double>::quiet_NaN();

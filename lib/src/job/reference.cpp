@@ -191,8 +191,14 @@ ThickSignal signal_from_sensitivity(const Run& run, const Line& line, bool share
   }
   if (shared_line) return signal;
   if (!run.transmission_corrected && !run.sensitivity_includes_transmission) add_transmission(run, line, signal);
-  // Elemental and average-matrix sensitivities belong to the geometry they were measured in.
-  if (run.sensitivity_kind == SensitivityKind::atomic && !run.sensitivity_includes_asymmetry) add_asymmetry(run, line, signal, findings);
+  if (run.sensitivity_kind == SensitivityKind::atomic) {
+    if (!run.sensitivity_includes_asymmetry) add_asymmetry(run, line, signal, findings);
+  } else if (const double angle = run.geometry.source_analyser_angle_deg.value_or(kMagicAngleDeg); std::abs(angle - kMagicAngleDeg) > 2.0) {
+    add_finding(findings, {"asymmetry_not_applied", Severity::note,
+                           std::string(sensitivity_kind_name(run.sensitivity_kind)) +
+                               " sensitivities are taken to belong to the angle between X-rays and analyser of this instrument, which is not 54.7 deg",
+                           angle, kMagicAngleDeg});
+  }
   return signal;
 }
 

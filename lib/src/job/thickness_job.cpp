@@ -82,7 +82,8 @@ FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Meas
   if (route.substrate_length) general.substrate_line_length_nm = route.substrate_length->length_nm;
   general.emission_deg = emission_quantity(run, m.emission_deg, findings);
   general.acceptance_half_angle_deg = run.geometry.acceptance_half_angle_deg;
-  general.length_given_for_angle = run.length_given_for_angle && route.film_length.origin == "given";
+  general.length_given_for_angle = run.length_given_for_angle && route.film_length.origin == "given" &&
+                                   (!route.substrate_length || route.substrate_length->origin == "given");
 
   if (film && substrate) {
     for (const detail::LineCorrelation& c : m.correlations) {
@@ -100,6 +101,7 @@ FilmMeasurement measurement_of(const Run& run, const RouteWork& work, const Meas
     const auto correction = detail::overlying_correction(work.overlying, route.method, m.emission_deg, contamination);
     if (correction) {
       general.factors.insert(general.factors.end(), correction->begin(), correction->end());
+      general.log_of_layers_above = std::log(correction->front().quantity.value);
     } else {
       add_finding(findings, {"contamination_uncorrected", Severity::warning,
                              "layers above the film attenuate its lines and no thickness is known for them; this is not corrected "

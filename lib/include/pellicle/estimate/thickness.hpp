@@ -103,6 +103,8 @@ struct FilmMeasurement {
   std::optional<Quantity> substrate_line_length_nm = std::nullopt;
   Quantity emission_deg = 0.0;
   double acceptance_half_angle_deg = 0.0;
+  /// ln of those factors that go with the emission angle as exp(k/cosθ), at emission_deg: layers above the film.
+  double log_of_layers_above = 0.0;
   bool length_given_for_angle = false;   ///< the length was determined for this very angle
   std::vector<NamedCorrelation> correlations = {};
 };

@@ -10,10 +10,7 @@
 namespace pellicle::detail {
 namespace {
 
-constexpr double kOneSided95 = 1.6448536269514722;
 constexpr double kTwoSided95 = 1.9599639845400543;
-/// Counts that the detection limit adds to twice the decision level.
-constexpr double kCurrieCounts = 2.71;
 
 Thickness with_area(FilmMeasurement m, const char* name, double area) {
   for (SignalFactor& f : m.factors) {

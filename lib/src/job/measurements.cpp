@@ -13,8 +13,6 @@
 namespace pellicle::detail {
 namespace {
 
-constexpr double kOneSided95 = 1.6448536269514722;
-
 /// Area of one component with its uncertainty: stated, counted, or assumed.
 struct ComponentArea {
   LineArea area;
@@ -149,7 +147,7 @@ std::optional<double> LineArea::decision_level() const {
 
 std::optional<double> LineArea::detection_limit() const {
   if (!sd_at_zero) return std::nullopt;
-  return 2.71 * one_count.value_or(0.0) + 2.0 * kOneSided95 * *sd_at_zero;
+  return kCurrieCounts * one_count.value_or(0.0) + 2.0 * kOneSided95 * *sd_at_zero;
 }
 
 bool LineArea::detected() const {

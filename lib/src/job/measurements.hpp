@@ -9,6 +9,11 @@
 
 namespace pellicle::detail {
 
+/// 95 % of a normal distribution lie below this many standard deviations above its mean.
+inline constexpr double kOneSided95 = 1.6448536269514722;
+/// Counts that the detection limit adds to twice the decision level, 1.645² [currie1968].
+inline constexpr double kCurrieCounts = 2.71;
+
 /// Area of one line at one spot and angle: the weighted sum of its components.
 struct LineArea {
   double value = 0.0;
